@@ -1,0 +1,107 @@
+import type { Flag, Spectrum } from '../spectrum/types.ts'
+
+/**
+ * What is fitted: components, shapes, background, window. Chosen by an information criterion on a
+ * sample's reference spectra, then locked: only spectra of one recipe are compared.
+ */
+export interface Recipe {
+  /** `2 gaussian + constant + scatter` */
+  readonly name: string
+  /** Ascending in position. */
+  readonly components: readonly RecipeComponent[]
+  readonly background: readonly BackgroundTerm[]
+  /** Vacuum wavenumbers, cm⁻¹. */
+  readonly windowPerCm: readonly [number, number]
+}
+
+export interface RecipeComponent {
+  readonly shape: 'gaussian'
+  /** `band`: a d–d band; `flank`: a charge-transfer band whose centre may lie beyond the window. */
+  readonly kind: 'band' | 'flank'
+  /** Where the search starts and how far it may go. cm⁻¹ */
+  readonly positionPerCm: number
+  readonly positionBoundsPerCm: readonly [number, number]
+  /** Full width at half maximum, cm⁻¹. */
+  readonly widthPerCm: number
+  readonly widthBoundsPerCm: readonly [number, number]
+}
+
+/** `scatter` grows as (ν̃/ν̃₀)ⁿ. */
+export type BackgroundTerm = { readonly kind: 'constant' } | { readonly kind: 'scatter'; readonly exponent: number }
+
+/** Where bands are expected, if anything is known. */
+export interface BandHint {
+  readonly positionPerCm: number
+  readonly withinPerCm: number
+}
+
+export interface RecipeOptions {
+  /** Exactly this many d–d bands (`fit --bands N`); absent: the criterion decides. */
+  readonly bands?: number
+  readonly hints?: readonly BandHint[]
+}
+
+export type RecipeChoice =
+  | {
+      readonly kind: 'chosen'
+      readonly recipe: Recipe
+      /** Other recipes that describe the spectra acceptably: their spread is the model uncertainty. Holds `recipe` too. */
+      readonly admissible: readonly Recipe[]
+    }
+  | { readonly kind: 'none'; readonly why: string; readonly flags: readonly Flag[] }
+
+export interface FittedComponent {
+  readonly kind: 'band' | 'flank'
+  /** Centre of the component. */
+  readonly positionPerCm: number
+  /** Repeatability, k = 1: covariance corrected for residual correlation. Null where it could not be had. */
+  readonly uPositionPerCm: number | null
+  /** Spread over the admissible recipes, k = 1. */
+  readonly uModelPerCm: number | null
+  /** Maximum of the measured curve near the component; null where the curve has none. */
+  readonly maximumPerCm: number | null
+  readonly uMaximumPerCm: number | null
+  readonly widthPerCm: number
+  readonly uWidthPerCm: number | null
+  readonly height: number
+  readonly uHeight: number | null
+}
+
+export interface FittedBackground {
+  readonly constant: number
+  /** Scatter at the middle of the window, absorbance. */
+  readonly scatter: number
+  readonly scatterExponent: number | null
+}
+
+export type BandFit =
+  | {
+      readonly kind: 'fitted'
+      readonly recipe: Recipe
+      /** Ascending in position, flanks included. */
+      readonly components: readonly FittedComponent[]
+      /** Covariance of the positions of `components`, same order, cm⁻². Null where it could not be had. */
+      readonly positionCovariance: readonly (readonly number[])[] | null
+      readonly background: FittedBackground
+      /** Root mean square of the residuals over the points used, absorbance. */
+      readonly rms: number
+      /** Median of the noise over the points used, absorbance. */
+      readonly noise: number
+      readonly reducedChi2: number
+      readonly points: number
+      readonly windowPerCm: readonly [number, number]
+      readonly iterations: number
+      readonly stopped: 'relative change' | 'gradient' | 'step' | 'iterations'
+      readonly flags: readonly Flag[]
+    }
+  | {
+      readonly kind: 'unfitted'
+      readonly why: string
+      readonly points: number
+      readonly windowPerCm: readonly [number, number] | null
+      readonly flags: readonly Flag[]
+    }
+
+/** Enters of the room, see index.ts. */
+export type ChooseRecipe = (spectra: readonly Spectrum[], options: RecipeOptions) => RecipeChoice
+export type FitBands = (spectrum: Spectrum, recipe: Recipe, admissible: readonly Recipe[]) => BandFit

@@ -1,0 +1,57 @@
+import type { Priority } from '../config/types.ts'
+import type { Evidence } from '../rules/types.ts'
+
+/** Facts of an alarm, frozen when it changed; text is made from them at sending. JSON-serialisable. */
+export interface AlarmFacts {
+  readonly kind: 'alarm'
+  readonly event: 'raised' | 'returned' | 're-alarmed'
+  readonly room: string
+  readonly alarm: number
+  readonly rule: string
+  readonly ruleTitle: string
+  /** The rule's `when` as the person wrote it, or the chart in words. */
+  readonly ruleText: string
+  readonly priority: Priority
+  readonly of: 'sample' | 'instrument' | 'study'
+  readonly subject: string
+  readonly study: string | null
+  readonly species: string | null
+  readonly speciesTitle: string | null
+  readonly instrument: string | null
+  /** ISO 8601 with offset, room's zone. */
+  readonly measuredAt: string | null
+  readonly since: string | null
+  /** Occasions over which the rule has rung in a row. */
+  readonly spectra: number
+  readonly evidence: readonly Evidence[]
+  /** Δo, B before and now, where they exist. */
+  readonly parameters: readonly Evidence[]
+  readonly diagnosis: string
+  readonly confidence: number | null
+  /** In words: what it may mean, on what evidence. */
+  readonly meaning: string
+  readonly check: readonly string[]
+  readonly cautions: readonly string[]
+  readonly file: string | null
+}
+
+export interface TestFacts {
+  readonly kind: 'test'
+  readonly room: string
+  readonly at: string
+}
+
+export type LetterFacts = AlarmFacts | TestFacts
+
+/** What goes into a message. */
+export interface LetterText {
+  readonly subject: string
+  readonly text: string
+  readonly html: string
+}
+
+/** Outcome of one attempt for one recipient. */
+export type Delivery =
+  | { readonly kind: 'sent' }
+  | { readonly kind: 'later'; readonly why: string }
+  | { readonly kind: 'refused'; readonly why: string }
