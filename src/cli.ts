@@ -1,0 +1,4 @@
+#!/usr/bin/env node
+import { runCommandLine } from './commands/index.ts'
+
+await runCommandLine(process.argv)
