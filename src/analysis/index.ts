@@ -1,0 +1,4 @@
+export { type AnalysisOutcome, analyse, lockRecipe } from './analyse.ts'
+export { type FileFacts, type Identity, identify, identifyAlone } from './identify.ts'
+export { analysisJson } from './json.ts'
+export { type Measured, quantitiesOf } from './quantities.ts'

@@ -1,0 +1,112 @@
+import type { LetterFacts } from '../mail/types.ts'
+import type { Db } from './open.ts'
+
+export interface WaitingLetter {
+  /** Row of the recipient. */
+  readonly id: number
+  readonly letter: number
+  readonly recipient: string
+  readonly messageId: string
+  readonly inReplyTo: string | null
+  readonly attempts: number
+  readonly firstAttemptAt: number | null
+  readonly createdAt: number
+  readonly facts: LetterFacts
+}
+
+interface WaitingRow {
+  id: number
+  letter: number
+  recipient: string
+  message_id: string
+  in_reply_to: string | null
+  attempts: number
+  first_attempt_at: number | null
+  created_at: number
+  facts: string
+}
+
+/** Letters are rows before they are messages: committed with the alarm they tell of. */
+export const letters = (db: Db) => {
+  const add = db.prepare(`INSERT INTO letter (alarm, facts, subject, created_at) VALUES (?, ?, ?, ?)`)
+  const addRecipient = db.prepare(
+    `INSERT INTO letter_recipient (letter, recipient, message_id, in_reply_to, state, attempts, next_attempt_at)
+     VALUES (?, ?, ?, ?, 'waiting', 0, ?)`,
+  )
+  const earlier = db.prepare<[number, string], { message_id: string }>(
+    `SELECT t.message_id FROM letter_recipient t JOIN letter l ON l.id = t.letter
+      WHERE l.alarm = ? AND t.recipient = ? ORDER BY t.id LIMIT 1`,
+  )
+  const due = db.prepare<[number, number], WaitingRow>(
+    `SELECT t.id, t.letter, t.recipient, t.message_id, t.in_reply_to, t.attempts, t.first_attempt_at, l.created_at, l.facts
+       FROM letter_recipient t JOIN letter l ON l.id = t.letter
+      WHERE t.state = 'waiting' AND t.next_attempt_at <= ? ORDER BY t.next_attempt_at, t.id LIMIT ?`,
+  )
+  const sent = db.prepare(
+    `UPDATE letter_recipient SET state = 'sent', attempts = attempts + 1, sent_at = ?, next_attempt_at = NULL,
+            first_attempt_at = coalesce(first_attempt_at, ?), last_error = NULL WHERE id = ?`,
+  )
+  const later = db.prepare(
+    `UPDATE letter_recipient SET attempts = attempts + 1, next_attempt_at = ?, last_error = ?,
+            first_attempt_at = coalesce(first_attempt_at, ?) WHERE id = ?`,
+  )
+  const failed = db.prepare(
+    `UPDATE letter_recipient SET state = 'failed', attempts = attempts + 1, next_attempt_at = NULL, last_error = ?,
+            first_attempt_at = coalesce(first_attempt_at, ?) WHERE id = ?`,
+  )
+  const nextDue = db.prepare<[], { at: number | null }>(
+    `SELECT min(next_attempt_at) AS at FROM letter_recipient WHERE state = 'waiting'`,
+  )
+  const standing = db.prepare<
+    [],
+    { waiting: number; failed: number; oldest: number | null; last_error: string | null }
+  >(
+    `SELECT count(*) FILTER (WHERE t.state = 'waiting') AS waiting, count(*) FILTER (WHERE t.state = 'failed') AS failed,
+            min(l.created_at) FILTER (WHERE t.state = 'waiting') AS oldest,
+            max(t.last_error) FILTER (WHERE t.state = 'waiting') AS last_error
+       FROM letter_recipient t JOIN letter l ON l.id = t.letter`,
+  )
+
+  return {
+    /** Adds a letter to each recipient, in the thread of the alarm's first letter to them. */
+    add: (
+      { alarm, facts, subject }: { alarm: number | null; facts: LetterFacts; subject: string },
+      recipients: readonly string[],
+      at: number,
+      messageIdFor: (letter: number, recipient: string) => string,
+    ): void => {
+      const letter = Number(add.run(alarm, JSON.stringify(facts), subject, at).lastInsertRowid)
+      for (const recipient of new Set(recipients)) {
+        const thread = alarm === null ? null : (earlier.get(alarm, recipient)?.message_id ?? null)
+        addRecipient.run(letter, recipient, messageIdFor(letter, recipient), thread, at)
+      }
+    },
+
+    due: (now: number, limit: number): readonly WaitingLetter[] =>
+      due.all(now, limit).map((row) => ({
+        id: row.id,
+        letter: row.letter,
+        recipient: row.recipient,
+        messageId: row.message_id,
+        inReplyTo: row.in_reply_to,
+        attempts: row.attempts,
+        firstAttemptAt: row.first_attempt_at,
+        createdAt: row.created_at,
+        facts: JSON.parse(row.facts) as LetterFacts,
+      })),
+
+    markSent: (id: number, at: number): void => {
+      sent.run(at, at, id)
+    },
+    markLater: (id: number, at: number, nextAt: number, why: string): void => {
+      later.run(nextAt, why, at, id)
+    },
+    markFailed: (id: number, at: number, why: string): void => {
+      failed.run(why, at, id)
+    },
+
+    /** When the next letter is due; null when none waits. */
+    nextDueAt: (): number | null => nextDue.get()?.at ?? null,
+    standing: () => standing.get()!,
+  }
+}

@@ -1,0 +1,75 @@
+import { deflateRawSync, inflateRawSync } from 'node:zlib'
+import type { Identity } from '../analysis/identify.ts'
+import type { RawSpectrum } from '../readers/types.ts'
+import type { Db } from './open.ts'
+
+export interface StoredSpectrum {
+  readonly id: number
+  readonly arrival: number
+  readonly instrument: string
+  readonly sample: string | null
+  readonly measuredAt: number
+  readonly raw: RawSpectrum
+}
+
+interface SpectrumRow {
+  id: number
+  arrival: number
+  instrument: string
+  sample: string | null
+  measured_at: number
+  as_read: string
+  x: Buffer
+  y: Buffer
+}
+
+const deflated = (values: Float64Array): Buffer =>
+  deflateRawSync(Buffer.from(values.buffer, values.byteOffset, values.byteLength), { level: 6 })
+
+const inflated = (blob: Buffer): Float64Array => {
+  const bytes = inflateRawSync(blob)
+  return new Float64Array(bytes.buffer.slice(bytes.byteOffset, bytes.byteOffset + bytes.byteLength))
+}
+
+const fromRow = (row: SpectrumRow): StoredSpectrum => ({
+  id: row.id,
+  arrival: row.arrival,
+  instrument: row.instrument,
+  sample: row.sample,
+  measuredAt: row.measured_at,
+  raw: { ...(JSON.parse(row.as_read) as Omit<RawSpectrum, 'x' | 'y'>), x: inflated(row.x), y: inflated(row.y) },
+})
+
+/** Spectra as their files hold them. */
+export const spectra = (db: Db) => {
+  const add = db.prepare(
+    `INSERT INTO spectrum (arrival, position, instrument, sample, measured_at, as_read, x, y, flags)
+     VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?)`,
+  )
+  const one = db.prepare<[number], SpectrumRow>(
+    `SELECT id, arrival, instrument, sample, measured_at, as_read, x, y FROM spectrum WHERE id = ?`,
+  )
+
+  return {
+    add: (arrival: number, instrument: string, raw: RawSpectrum, identity: Identity): number => {
+      const { x, y, ...asRead } = raw
+      const added = add.run(
+        arrival,
+        raw.index,
+        instrument,
+        identity.sample,
+        identity.measuredAt,
+        JSON.stringify(asRead),
+        deflated(x),
+        deflated(y),
+        JSON.stringify(identity.flags),
+      )
+      return Number(added.lastInsertRowid)
+    },
+
+    get: (id: number): StoredSpectrum | null => {
+      const row = one.get(id)
+      return row === undefined ? null : fromRow(row)
+    },
+  }
+}
