@@ -1,0 +1,76 @@
+/**
+ * Electrons of one spin: a string is a set of occupied orbitals (bits of a number below 32), determinants are pairs of
+ * an α and a β string. Operators on determinants are Kronecker products of operators on strings, at most 10 × 10.
+ */
+import type { Matrix } from './orbitals.ts'
+
+const bits = (set: number): number => {
+  let count = 0
+  for (let rest = set; rest !== 0; rest &= rest - 1) count += 1
+  return count
+}
+
+/** All strings with `count` electrons in five orbitals, ascending. */
+export const stringsOf = (count: number): readonly number[] =>
+  Array.from({ length: 32 }, (_, set) => set).filter((set) => bits(set) === count)
+
+const occupied = (set: number): readonly number[] => [0, 1, 2, 3, 4].filter((i) => (set >> i) & 1)
+
+/** Sign of moving past the electrons before orbital i. */
+const sign = (set: number, i: number): number => (bits(set & ((1 << i) - 1)) % 2 === 0 ? 1 : -1)
+
+const zeros = (rows: number, columns: number): number[][] => Array.from({ length: rows }, () => Array(columns).fill(0))
+
+/** Matrix of the one-electron operator `h` (5 × 5) among strings of `count` electrons: Σ hᵢⱼ aᵢ†aⱼ. */
+export const oneElectron = (h: Matrix, count: number): number[][] => {
+  const strings = stringsOf(count)
+  const out = zeros(strings.length, strings.length)
+  strings.forEach((from, column) => {
+    for (const j of occupied(from)) {
+      const without = from & ~(1 << j)
+      for (let i = 0; i < 5; i += 1) {
+        if ((without >> i) & 1) continue
+        const row = strings.indexOf(without | (1 << i))
+        out[row]![column]! += sign(from, j) * sign(without, i) * h[i]![j]!
+      }
+    }
+  })
+  return out
+}
+
+/** Takes an electron out of orbital i: from `count` to `count − 1` electrons. */
+export const annihilate = (i: number, count: number): number[][] => {
+  const from = stringsOf(count)
+  const to = stringsOf(count - 1)
+  const out = zeros(to.length, from.length)
+  from.forEach((set, column) => {
+    if ((set >> i) & 1) out[to.indexOf(set & ~(1 << i))]![column] = sign(set, i)
+  })
+  return out
+}
+
+/** Determinant by elimination with pivots; `m` is small and is destroyed. */
+const determinant = (m: number[][]): number => {
+  let product = 1
+  for (let k = 0; k < m.length; k += 1) {
+    let pivot = k
+    for (let i = k + 1; i < m.length; i += 1) if (Math.abs(m[i]![k]!) > Math.abs(m[pivot]![k]!)) pivot = i
+    if (m[pivot]![k] === 0) return 0
+    if (pivot !== k) {
+      ;[m[k], m[pivot]] = [m[pivot]!, m[k]!]
+      product = -product
+    }
+    product *= m[k]![k]!
+    for (let i = k + 1; i < m.length; i += 1) {
+      const factor = m[i]![k]! / m[k]![k]!
+      for (let j = k + 1; j < m.length; j += 1) m[i]![j]! -= factor * m[k]![j]!
+    }
+  }
+  return product
+}
+
+/** How strings turn when every electron's orbitals turn by `r`: the minors of `r`. */
+export const rotateStrings = (r: Matrix, count: number): number[][] => {
+  const strings = stringsOf(count).map(occupied)
+  return strings.map((row) => strings.map((column) => determinant(row.map((i) => column.map((j) => r[i]![j]!)))))
+}
