@@ -27,6 +27,21 @@ export const analyse = (raw: RawSpectrum, context: AnalysisContext, locked: Lock
   }
 }
 
+/** A spectrum that could not even be prepared, as the record keeps it: nothing but the reason. */
+export const unprepared = (raw: RawSpectrum, faults: readonly Fault[]): Analysis => {
+  const why = faults.map(({ what }) => what).join('; ')
+  return {
+    engine: ENGINE,
+    spectrum: null,
+    fit: { kind: 'unfitted', why, points: raw.x.length, windowPerCm: null, flags: [] },
+    locked: null,
+    bands: [],
+    ligandField: null,
+    flags: [],
+    remarks: [why],
+  }
+}
+
 /**
  * The recipe for a sample, chosen on all its reference spectra together, with the roles of its components.
  * `none` says why no recipe describes them.
@@ -35,8 +50,9 @@ export const lockRecipe = (
   spectra: readonly Spectrum[],
   context: AnalysisContext,
 ): LockedRecipe | Extract<RecipeChoice, { kind: 'none' }> => {
+  const bands = context.bands ?? expectedInside(spectra, context)
   const choice = chooseRecipe(spectra, {
-    ...(context.bands === null ? {} : { bands: context.bands }),
+    ...(bands === null ? {} : { bands }),
     hints: context.expected.map(({ nearPerCm, withinPerCm }) => ({ positionPerCm: nearPerCm, withinPerCm })),
   })
   if (choice.kind === 'none') return choice
@@ -45,6 +61,14 @@ export const lockRecipe = (
   const fit = fitBands(newest, recipe, [recipe])
   const roles = fit.kind === 'fitted' ? assign(fit.components, context).roles : recipe.components.map(() => NO_ROLE)
   return { recipe, admissible, roles }
+}
+
+/** How many of the species' bands the spectra can show; null where nothing is expected. */
+const expectedInside = (spectra: readonly Spectrum[], { expected }: AnalysisContext): number | null => {
+  const low = Math.max(...spectra.map(({ wavenumberPerCm }) => wavenumberPerCm[0]!))
+  const high = Math.min(...spectra.map(({ wavenumberPerCm }) => wavenumberPerCm.at(-1)!))
+  const inside = expected.filter(({ nearPerCm }) => nearPerCm > low && nearPerCm < high).length
+  return inside === 0 ? null : inside
 }
 
 const NO_ROLE: AssignedBand = { role: null, term: null }

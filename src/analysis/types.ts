@@ -48,7 +48,8 @@ export interface AnalysedBand {
 /** From one spectrum to its numbers: what the worker hands back and the store keeps. */
 export interface Analysis {
   readonly engine: string
-  readonly spectrum: Spectrum
+  /** Null where the spectrum could not be prepared; `fit` says why. */
+  readonly spectrum: Spectrum | null
   readonly fit: BandFit
   /** Null where no recipe could be chosen. */
   readonly locked: LockedRecipe | null

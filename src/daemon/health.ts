@@ -1,0 +1,135 @@
+import { type Db, whoHolds } from '../store/index.ts'
+
+/** What the daemon notes of itself, for `status` and the health page to read from another process. */
+export interface DaemonNote {
+  readonly instruments: readonly {
+    readonly instrument: string
+    readonly reachable: boolean
+    readonly last_scan_at: string | null
+    readonly waiting: readonly string[]
+  }[]
+  /** Sentences: a refused reload, a storage fault, a watcher that failed. */
+  readonly troubles: readonly string[]
+}
+
+export interface Health extends DaemonNote {
+  /** Empty when healthy. */
+  readonly reasons: readonly string[]
+  /** Who holds the data folder; null when no daemon runs. */
+  readonly daemon: string | null
+  readonly spectra: number
+  readonly last_stored_at: string | null
+  readonly pending: number
+  readonly letters: {
+    readonly waiting: number
+    readonly failed: number
+    readonly oldest_waiting: string | null
+    readonly last_error: string | null
+  }
+  readonly alarms: number
+  readonly set_aside: readonly {
+    readonly instrument: string
+    readonly file: string
+    readonly received_at: string
+    readonly reason: string | null
+  }[]
+  readonly gathering: readonly string[]
+  readonly unknown_samples: readonly string[]
+}
+
+/** How long a daemon may be silent, and how long a fresh fault counts, before `status` calls it degraded. */
+const SILENT_MS = 5 * 60_000
+const RECENT_MS = 24 * 3_600_000
+const LISTED = 20
+
+/** Progress, not liveness: reads what was stored and what the daemon last noted of itself. Reads only. */
+export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
+  const daemon = whoHolds(dataFolder)
+  const note = noteOf(db)
+  const recent = new Date(now - RECENT_MS).toISOString().slice(0, 19)
+  const counts = db
+    .prepare<[], { spectra: number; pending: number; alarms: number; last: string | null }>(
+      `SELECT (SELECT count(*) FROM spectrum) AS spectra,
+              (SELECT count(*) FROM intake WHERE outcome IS NULL) AS pending,
+              (SELECT count(*) FROM alarm WHERE state <> 'normal') AS alarms,
+              (SELECT max(received_at) FROM intake WHERE outcome = 'stored') AS last`,
+    )
+    .get()!
+  const letters = db
+    .prepare<[], Health['letters']>(
+      `SELECT count(*) FILTER (WHERE t.state = 'waiting') AS waiting, count(*) FILTER (WHERE t.state = 'failed') AS failed,
+              strftime('%Y-%m-%dT%H:%M:%SZ', min(l.created_at) FILTER (WHERE t.state = 'waiting') / 1000, 'unixepoch') AS oldest_waiting,
+              (SELECT last_error FROM letter_recipient WHERE last_error IS NOT NULL ORDER BY id DESC LIMIT 1) AS last_error
+         FROM letter_recipient t JOIN letter l ON l.id = t.letter`,
+    )
+    .get()!
+  const setAside = db
+    .prepare<[number], Health['set_aside'][number]>(
+      `SELECT instrument, file, received_at, reason FROM intake
+        WHERE outcome = 'rejected' OR (outcome = 'stored' AND reason IS NOT NULL) ORDER BY arrival DESC LIMIT ?`,
+    )
+    .all(LISTED)
+  return {
+    ...note.body,
+    reasons: [
+      ...aliveness(daemon, note.at, now),
+      ...note.body.troubles,
+      ...note.body.instruments
+        .filter(({ reachable }) => !reachable)
+        .map(({ instrument }) => `the drop folder of ${instrument} cannot be reached`),
+      ...setAside
+        .filter(({ received_at }) => received_at >= recent)
+        .map(({ instrument, file }) => `a file was set aside: ${instrument} ${file}`),
+      ...(letters.waiting > 0 && letters.last_error !== null
+        ? [`${letters.waiting} letters wait since ${letters.oldest_waiting}: ${letters.last_error}`]
+        : []),
+      ...(letters.failed > 0 ? [`${letters.failed} letters were given up: ${letters.last_error}`] : []),
+    ],
+    daemon,
+    spectra: counts.spectra,
+    last_stored_at: counts.last,
+    pending: counts.pending,
+    letters,
+    alarms: counts.alarms,
+    set_aside: setAside,
+    gathering: gathering(db),
+    unknown_samples: unknownSamples(db),
+  }
+}
+
+const noteOf = (db: Db): { body: DaemonNote; at: number | null } => {
+  const row = db
+    .prepare<[], { body: string; at: number }>(`SELECT body, at FROM daemon_state WHERE subject = 'daemon'`)
+    .get()
+  return row === undefined
+    ? { body: { instruments: [], troubles: [] }, at: null }
+    : { body: JSON.parse(row.body) as DaemonNote, at: row.at }
+}
+
+const aliveness = (daemon: string | null, notedAt: number | null, now: number): readonly string[] => {
+  if (daemon === null) return ['no daemon is running on this data folder: start `tendq run`']
+  if (notedAt === null || now - notedAt > SILENT_MS)
+    return ['the daemon runs but has noted nothing for five minutes: see its log']
+  return []
+}
+
+/** Samples whose newest spectrum was judged by a rule that still gathers. */
+const gathering = (db: Db): readonly string[] =>
+  db
+    .prepare<[number], { line: string }>(
+      `SELECT s.sample || ' on ' || s.instrument || ': ' || min(j.what) AS line
+         FROM spectrum s JOIN judgement j ON j.spectrum = s.id AND j.outcome = 'gathering'
+        WHERE s.id IN (SELECT max(id) FROM spectrum WHERE sample IS NOT NULL GROUP BY sample, instrument)
+        GROUP BY s.id ORDER BY s.sample LIMIT ?`,
+    )
+    .all(LISTED)
+    .map(({ line }) => line)
+
+const unknownSamples = (db: Db): readonly string[] =>
+  db
+    .prepare<[number], { sample: string }>(
+      `SELECT coalesce(sample, '(no name)') AS sample FROM spectrum
+        WHERE NOT EXISTS (SELECT 1 FROM analysis WHERE analysis.spectrum = spectrum.id) GROUP BY 1 ORDER BY 1 LIMIT ?`,
+    )
+    .all(LISTED)
+    .map(({ sample }) => sample)

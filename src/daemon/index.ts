@@ -1,0 +1,90 @@
+import { setTimeout as wait } from 'node:timers/promises'
+import { watch } from 'chokidar'
+import { startIntake } from '../intake/index.ts'
+import { startWeb } from '../web/index.ts'
+import { type House, openHouse, type Stop } from './house.ts'
+import { startLog } from './log.ts'
+
+/** How often the daemon looks up by itself: letters due, overdue samples, what it notes of itself. */
+const TICK_MS = 10_000
+
+/** Editors save in several steps; a configuration is read when the folder has been quiet this long. */
+const QUIET_MS = 500
+
+/** Runs until SIGTERM or SIGINT. Throws FaultError when it cannot start. */
+export const runDaemon = async (configFolder: string): Promise<void> => {
+  const house = openHouse(configFolder, startLog())
+  const stops: Stop[] = []
+  const asked = signalled()
+  try {
+    let intake = startIntake(house.room().config.instruments, house.intakePorts(), house.intakeOptions)
+    house.watchIntake(() => intake.state())
+    house.noteIntakeWaiting(() => intake.waiting())
+    stops.push(() => intake.stop())
+    const reload = async (why: string): Promise<void> => {
+      if (!house.reload(why)) return
+      await intake.stop()
+      intake = startIntake(house.room().config.instruments, house.intakePorts(), house.intakeOptions)
+    }
+    stops.push(watchConfiguration(configFolder, () => void reload('a file of it was saved')))
+    const onHangUp = () => void reload('SIGHUP')
+    process.on('SIGHUP', onHangUp)
+    stops.push(() => void process.off('SIGHUP', onHangUp))
+    const { web } = house.room().config
+    if (web !== null) stops.push(await startWeb(web, house.room().config.dataFolder, house.log))
+    const ticking = setInterval(() => house.tick(), TICK_MS)
+    stops.push(() => clearInterval(ticking))
+    house.tick()
+    house.log.info({ room: house.room().config.room, data: house.room().config.dataFolder }, 'the daemon is up')
+    house.log.info({ signal: await asked }, 'the daemon stops')
+  } finally {
+    for (const stop of stops.reverse()) await stop()
+    await house.close()
+  }
+}
+
+/** Takes in everything that waits, evaluates, tries once to send what is due. */
+export const runOnce = async (configFolder: string): Promise<void> => {
+  const house = openHouse(configFolder, startLog(process.env.TENDQ_LOG_LEVEL ?? 'warn'))
+  try {
+    const intake = startIntake(house.room().config.instruments, house.intakePorts(), {
+      ...house.intakeOptions,
+      watch: false,
+    })
+    house.watchIntake(() => intake.state())
+    house.noteIntakeWaiting(() => intake.waiting())
+    try {
+      await intake.settleAll()
+      await house.work()
+      await house.judgeTimes()
+      await house.sendLetters()
+      house.note()
+    } finally {
+      await intake.stop()
+    }
+  } finally {
+    await house.close()
+  }
+}
+
+const signalled = (): Promise<string> =>
+  new Promise((resolve) => {
+    process.once('SIGTERM', resolve)
+    process.once('SIGINT', resolve)
+  })
+
+/** Calls back when the folder was quiet for a moment after a change. Events are a hint; SIGHUP always works. */
+const watchConfiguration = (folder: string, changed: () => void): Stop => {
+  const watcher = watch(folder, { ignoreInitial: true })
+  let latest = 0
+  watcher.on('all', async () => {
+    latest += 1
+    const mine = latest
+    await wait(QUIET_MS)
+    if (mine === latest) changed()
+  })
+  watcher.on('error', () => undefined)
+  return () => watcher.close()
+}
+
+export type { House }

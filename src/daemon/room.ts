@@ -1,0 +1,36 @@
+import { findConfigFolder, loadConfig, studyOf } from '../config/index.ts'
+import type { Config, Study } from '../config/types.ts'
+import { EXIT, type Fault, FaultError } from '../fault.ts'
+import { compileRule } from '../rules/index.ts'
+import type { CompiledRule } from '../rules/types.ts'
+
+/** A configuration with its rules compiled: what is in force. */
+export interface RoomInForce {
+  readonly config: Config
+  readonly rules: readonly CompiledRule[]
+  /** The study that claims a sample; null when none does. */
+  readonly studyOf: (sample: string) => Study | null
+}
+
+export type RoomLoaded =
+  | { readonly kind: 'loaded'; readonly room: RoomInForce }
+  | { readonly kind: 'refused'; readonly faults: readonly [Fault, ...Fault[]] }
+
+/** Loads a configuration folder whole, or names every fault in it, those of the rules included. */
+export const loadRoom = (folder: string): RoomLoaded => {
+  const loaded = loadConfig(folder)
+  if (loaded.kind === 'refused') return loaded
+  const { config } = loaded
+  const compiled = config.rules.map(compileRule)
+  const faults = compiled.flatMap((one) => (one.kind === 'refused' ? one.faults : []))
+  if (faults.length > 0) return { kind: 'refused', faults: faults as [Fault, ...Fault[]] }
+  const rules = compiled.flatMap((one) => (one.kind === 'compiled' ? [one.rule] : []))
+  return { kind: 'loaded', room: { config, rules, studyOf: (sample) => studyOf(config, sample) } }
+}
+
+/** For commands: the room of `--config`, or a FaultError with every fault (exit 78). */
+export const roomOf = (option: string | undefined): RoomInForce => {
+  const loaded = loadRoom(findConfigFolder(option))
+  if (loaded.kind === 'refused') throw new FaultError(loaded.faults, EXIT.config)
+  return loaded.room
+}
