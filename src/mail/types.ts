@@ -53,5 +53,6 @@ export interface LetterText {
 /** Outcome of one attempt for one recipient. */
 export type Delivery =
   | { readonly kind: 'sent' }
-  | { readonly kind: 'later'; readonly why: string }
+  /** `unreachable`: the server itself could not be reached, so no other letter would fare better now. */
+  | { readonly kind: 'later'; readonly why: string; readonly unreachable?: boolean }
   | { readonly kind: 'refused'; readonly why: string }

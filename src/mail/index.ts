@@ -1,0 +1,5 @@
+export { composeLetter } from './letter.ts'
+export { createPost, type OutgoingLetter, type Patience, type Post } from './post.ts'
+export { hasExpired, nextAttemptDelayMs } from './retry.ts'
+export { resolveSecret } from './secret.ts'
+export { sendTestLetter } from './testLetter.ts'

@@ -1,0 +1,112 @@
+import { type Block, printHtml, printText } from './blocks.ts'
+import { figureRow, labelOf, sayChange } from './figures.ts'
+import { oneLine } from './plain.ts'
+import type { AlarmFacts, LetterFacts, LetterText, TestFacts } from './types.ts'
+
+const NO_SAFETY_SYSTEM =
+  'tendq is no certified safety system: do not rely on it where a missed or late letter could hurt someone. Local rules, the safety data sheet and licensed practice come first.'
+
+/** What is written, in a letter, from the facts frozen when the alarm changed. Pure; says nothing the facts do not hold. */
+export const composeLetter = (facts: LetterFacts): LetterText =>
+  facts.kind === 'test' ? composeTest(facts) : composeAlarm(facts)
+
+const letter = (subject: string, blocks: readonly Block[]): LetterText => ({
+  subject: oneLine(subject, 180),
+  text: printText(blocks),
+  html: printHtml(oneLine(subject, 180), blocks),
+})
+
+const composeTest = ({ room, at }: TestFacts): LetterText =>
+  letter(`[${oneLine(room, 40)}] Test letter`, [
+    paragraph(`This is a test letter from the room ${oneLine(room)}, written at ${oneLine(at)}.`),
+    paragraph('Letters about alarms will come this way. Nothing needs to be done.'),
+    paragraph(NO_SAFETY_SYSTEM),
+  ])
+
+const EVENT = { raised: '', returned: 'back to normal: ', 're-alarmed': 'still in alarm: ' } as const
+const PRIORITY = { high: 'High', medium: 'Medium', low: 'Low' } as const
+
+/** Sample, what, how much: enough to decide from the list of letters whether to open this one. */
+const subjectLine = (facts: AlarmFacts): string => {
+  const moved = facts.evidence.find((evidence) => sayChange(evidence) !== null)
+  const howMuch = moved === undefined ? '' : `, ${labelOf(moved.name)} ${sayChange(moved)}`
+  const what = `${EVENT[facts.event]}${oneLine(facts.ruleTitle, 60)}`
+  return `[${oneLine(facts.room, 40)}] ${oneLine(facts.subject, 50)}: ${what}${howMuch}`
+}
+
+const composeAlarm = (facts: AlarmFacts): LetterText =>
+  letter(subjectLine(facts), [
+    paragraph(openingOf(facts)),
+    ...section('What moved', figuresOf(facts)),
+    ...section('Which', [{ kind: 'list', items: whichOf(facts) }]),
+    ...section('Rule', [
+      paragraph(`${oneLine(facts.ruleTitle)} (${oneLine(facts.rule, 80)}). It rings when this holds:`),
+      command(oneLine(facts.ruleText, 1000)),
+    ]),
+    ...section('Likely cause', causeOf(facts)),
+    ...section('Check first', listOf(facts.check)),
+    ...section('Cautions', listOf(facts.cautions)),
+    ...section('Acknowledge', [
+      paragraph('To say that you have seen this alarm (not that it is mended), on the machine that runs tendq:'),
+      command(`tendq alarms acknowledge ${facts.alarm} --by WHO --note TEXT`),
+    ]),
+    ...section('Note', [paragraph(NO_SAFETY_SYSTEM)]),
+  ])
+
+const paragraph = (text: string): Block => ({ kind: 'paragraph', text })
+const command = (text: string): Block => ({ kind: 'command', text })
+
+const section = (title: string, blocks: readonly Block[]): readonly Block[] =>
+  blocks.length === 0 ? [] : [{ kind: 'heading', text: title }, ...blocks]
+
+const listOf = (items: readonly string[]): readonly Block[] =>
+  items.length === 0 ? [] : [{ kind: 'list', items: items.map((item) => oneLine(item, 1000)) }]
+
+const openingOf = ({ event, of, subject, ruleTitle, priority, spectra, since }: AlarmFacts): string => {
+  const name = `${of} ${oneLine(subject, 120)}`
+  const title = oneLine(ruleTitle, 120)
+  const from = since === null ? '' : ` since ${oneLine(since, 60)}`
+  const seen = spectra > 0 ? `, on ${spectra} ${spectra === 1 ? 'occasion' : 'occasions in a row'}` : ''
+  switch (event) {
+    case 'raised':
+      return `${PRIORITY[priority]} priority. For the ${name} the rule “${title}” rings${from}${seen}.`
+    case 're-alarmed':
+      return `${PRIORITY[priority]} priority. For the ${name} the rule “${title}” still rings${from}${seen}.`
+    case 'returned':
+      return `For the ${name} the rule “${title}” no longer rings. An alarm that nobody has acknowledged stays on the list until someone does.`
+  }
+}
+
+const figuresOf = ({ evidence, parameters }: AlarmFacts): readonly Block[] => {
+  const told = new Set(evidence.map(({ name }) => name))
+  const rows = [...evidence, ...parameters.filter(({ name }) => !told.has(name))].map(figureRow)
+  if (rows.length === 0) return []
+  return [
+    { kind: 'figures', rows },
+    paragraph('After ± stands the standard uncertainty (k = 1); that of a change combines both sides.'),
+  ]
+}
+
+const whichOf = (facts: AlarmFacts): readonly string[] => {
+  const entries: readonly (readonly [string, string | null])[] = [
+    ['Room', facts.room],
+    ['Study', facts.study],
+    ['Compound', facts.speciesTitle ?? facts.species],
+    ['Instrument', facts.instrument],
+    ['Measured at', facts.measuredAt],
+    ['File', facts.file],
+    ['Alarm', String(facts.alarm)],
+  ]
+  return entries.flatMap(([label, value]) => (value === null ? [] : [`${label}: ${oneLine(value)}`]))
+}
+
+const causeOf = ({ diagnosis, confidence, meaning }: AlarmFacts): readonly Block[] => {
+  const sure =
+    confidence === null
+      ? 'no probability has been worked out for it'
+      : `posterior probability ${Math.round(confidence * 100)} %`
+  return [
+    paragraph(`${oneLine(diagnosis, 60)} (${sure}).`),
+    ...(meaning === '' ? [] : [paragraph(oneLine(meaning, 2000))]),
+  ]
+}

@@ -1,0 +1,32 @@
+import type { AlarmFacts } from '../../src/mail/types.ts'
+
+export const ALARM: AlarmFacts = {
+  kind: 'alarm',
+  event: 'raised',
+  room: 'North bench',
+  alarm: 7,
+  rule: 'first-band-shift',
+  ruleTitle: 'First band has moved',
+  ruleText: 'abs(nu1 - reference(nu1)) > max(4 * sqrt(u(nu1)^2 + u_reference(nu1)^2), 60 cm^-1)',
+  priority: 'high',
+  of: 'sample',
+  subject: 'AGE40-1',
+  study: 'aging-40',
+  species: 'chloropentaammine',
+  speciesTitle: '[CrCl(NH3)5]2+',
+  instrument: 'uv1',
+  measuredAt: '2026-03-04T09:00:00+00:00',
+  since: '2026-03-04T03:00:00+00:00',
+  spectra: 2,
+  evidence: [{ name: 'nu1', unit: 'cm^-1', value: 19633.2, u: 8.1, reference: 19531.4, uReference: 4.2 }],
+  parameters: [
+    { name: 'delta_o', unit: 'cm^-1', value: 19633.2, u: 8.1, reference: 19531.4, uReference: 4.2 },
+    { name: 'b', unit: 'cm^-1', value: 641.2, u: 3.3, reference: null, uReference: null },
+  ],
+  diagnosis: 'substitution',
+  confidence: null,
+  meaning: 'The bands moved towards those of NH3:5 H2O:1.',
+  check: ['Measure the sample again.'],
+  cautions: ['Your safety data sheet and local rules come first.'],
+  file: 'AGE40-1_20260304T0900.csv',
+}
