@@ -5,6 +5,8 @@ export interface DaemonNote {
   readonly instruments: readonly {
     readonly instrument: string
     readonly reachable: boolean
+    /** Why not, where it is not. */
+    readonly why: string | null
     readonly last_scan_at: string | null
     readonly waiting: readonly string[]
   }[]
@@ -76,7 +78,9 @@ export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
       ...note.body.troubles,
       ...note.body.instruments
         .filter(({ reachable }) => !reachable)
-        .map(({ instrument }) => `the drop folder of ${instrument} cannot be reached`),
+        .map(
+          ({ instrument, why }) => `the drop folder of ${instrument} cannot be reached: ${why ?? 'it does not answer'}`,
+        ),
       ...setAside
         .filter(({ received_at }) => received_at >= recent)
         .map(({ instrument, file }) => `a file was set aside: ${instrument} ${file}`),

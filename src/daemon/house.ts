@@ -1,9 +1,11 @@
 import type { Logger } from 'pino'
 import { EXIT, FaultError, sayFault } from '../fault.ts'
-import type { IntakeOptions, IntakePorts, IntakeState } from '../intake/types.ts'
+import { startIntake } from '../intake/index.ts'
+import type { Intake, IntakeEvent, IntakeOptions, IntakePorts } from '../intake/types.ts'
 import { holdDataFolder, openStore, storeOn } from '../store/index.ts'
+import { singleFlight } from './flight.ts'
 import type { DaemonNote } from './health.ts'
-import { judgeOverdue } from './overdue.ts'
+import { judgeOverdueSamples } from './overdue.ts'
 import { processPending, type Stations } from './pipeline.ts'
 import { startPool } from './pool.ts'
 import { sendDue } from './post.ts'
@@ -16,9 +18,7 @@ const RETRY_MS = 10_000
 
 /** Everything that runs for as long as the daemon does, wired together. Throws FaultError where it cannot start. */
 export const openHouse = (configFolder: string, log: Logger) => {
-  const loaded = loadRoom(configFolder)
-  if (loaded.kind === 'refused') throw new FaultError(loaded.faults, EXIT.config)
-  let inForce: RoomInForce = loaded.room
+  let inForce = mustLoad(configFolder)
   const { dataFolder } = inForce.config
   const now = () => Date.now()
   const lock = holdDataFolder(dataFolder, new Date(now()))
@@ -26,8 +26,25 @@ export const openHouse = (configFolder: string, log: Logger) => {
   store.records.configurationInForce(inForce.config, now())
   const pool = startPool()
   const troubles = new Map<string, string>()
-  let intakeState: () => readonly IntakeState[] = () => []
-  let intakeWaiting: () => readonly { instrument: string; file: string }[] = () => []
+  let intake: Intake | null = null
+
+  const trouble = (subject: string, sentence: string | null): void => {
+    if (sentence === null) troubles.delete(subject)
+    else troubles.set(subject, sentence)
+  }
+
+  /** Runs a job; a failure is logged and shown by `status`, and is over with the next success. */
+  const minding = async (subject: string, what: string, job: () => void | Promise<void>): Promise<boolean> => {
+    try {
+      await job()
+      trouble(subject, null)
+      return true
+    } catch (error) {
+      log.error({ err: error }, what)
+      trouble(subject, `${what}: ${error instanceof Error ? error.message : String(error)}`)
+      return false
+    }
+  }
 
   const stations: Stations = {
     store,
@@ -41,44 +58,32 @@ export const openHouse = (configFolder: string, log: Logger) => {
     },
   }
 
-  const trouble = (subject: string, sentence: string | null): void => {
-    if (sentence === null) troubles.delete(subject)
-    else troubles.set(subject, sentence)
-  }
-
   const working = singleFlight(async () => {
-    try {
+    const kept = await minding('storage', 'outcomes could not be kept, they will be tried again', async () => {
       await processPending(stations)
-      trouble('storage', null)
-    } catch (error) {
-      log.error({ err: error }, 'outcomes could not be kept; they will be tried again')
-      trouble('storage', `outcomes could not be kept: ${error instanceof Error ? error.message : String(error)}`)
-      setTimeout(() => working.kick(), RETRY_MS).unref()
-    }
+    })
+    if (!kept) setTimeout(() => working.kick(), RETRY_MS).unref()
   })
 
   const sending = singleFlight(async () => {
     const { mail } = inForce.config
-    if (mail === null) return
-    try {
-      await sendDue(mail, { store, log, now })
-      trouble('mail', null)
-    } catch (error) {
-      log.error({ err: error }, 'letters could not be sent')
-      trouble('mail', `letters could not be sent: ${error instanceof Error ? error.message : String(error)}`)
-    }
+    if (mail !== null) await minding('mail', 'letters could not be sent', () => sendDue(mail, { store, log, now }))
   })
 
+  const judgeTimes = (): Promise<boolean> =>
+    minding('overdue', 'overdue samples could not be judged', () => judgeOverdueSamples(stations))
+
   const note = (): void => {
-    const waiting = intakeWaiting()
+    const waiting = intake?.waiting() ?? []
     const body: DaemonNote = {
-      instruments: intakeState().map(({ instrument, reachable, lastScanAt }) => ({
+      instruments: (intake?.state() ?? []).map(({ instrument, reachable, why, lastScanAt }) => ({
         instrument,
         reachable,
+        why,
         last_scan_at: lastScanAt === null ? null : new Date(lastScanAt).toISOString(),
         waiting: waiting.filter((file) => file.instrument === instrument).map(({ file }) => file),
       })),
-      troubles: [...troubles.values()],
+      troubles: [...troubles.values(), ...(intake?.troubles() ?? []).map(({ fault }) => sayFault(fault))],
     }
     try {
       store.records.say('daemon', body, now())
@@ -87,71 +92,55 @@ export const openHouse = (configFolder: string, log: Logger) => {
     }
   }
 
-  const judgeTimes = async (): Promise<void> => {
-    try {
-      judgeOverdue(stations)
-    } catch (error) {
-      log.error({ err: error }, 'overdue samples could not be judged')
-    }
+  const ports: IntakePorts = {
+    seen: store.arrivals.seen,
+    claim: (arrival) => {
+      const id = store.arrivals.claim(arrival, now())
+      log.info({ arrival: id, instrument: arrival.instrument, file: arrival.file }, 'file taken in')
+      working.kick()
+    },
+    readsCompletely: async (instrument, file, bytes) => {
+      const hints = inForce.config.instruments.find(({ name }) => name === instrument)?.reading ?? {}
+      return (await pool.read({ bytes, file, hints })).kind === 'read'
+    },
+    now,
+    tell: (event) => tellLog(log, event),
   }
 
   return {
     log,
-    room: () => inForce,
-    intakeOptions: optionsFromEnvironment(),
-    watchIntake: (state: typeof intakeState): void => {
-      intakeState = state
-    },
-    noteIntakeWaiting: (waiting: typeof intakeWaiting): void => {
-      intakeWaiting = waiting
-    },
+    room: (): RoomInForce => inForce,
 
-    intakePorts: (): IntakePorts => ({
-      seen: store.arrivals.seen,
-      claim: (arrival) => {
-        const id = store.arrivals.claim(arrival, now())
-        log.info({ arrival: id, instrument: arrival.instrument, file: arrival.file }, 'file taken in')
-        working.kick()
-      },
-      readsCompletely: async (instrument, file, bytes) => {
-        const hints = inForce.config.instruments.find(({ name }) => name === instrument)?.reading ?? {}
-        const reading = await pool.read({ bytes, file, hints })
-        return reading.kind === 'read'
-      },
-      now,
-      tell: (event) => {
-        log.warn(event, 'intake')
-        trouble(
-          `intake ${event.instrument} ${event.file ?? ''} ${event.kind}`,
-          event.mended === true ? null : event.what,
-        )
-      },
-    }),
+    /** Takes files in by the configuration in force, in place of the intake that ran before. */
+    takeIn: async (options: Partial<IntakeOptions>): Promise<Intake> => {
+      await intake?.stop()
+      const started = startIntake(inForce.config.instruments, ports, { ...optionsFromEnvironment(), ...options })
+      intake = started
+      return started
+    },
 
     /** Takes a changed configuration whole, or keeps the old one and says so. True when a new one is in force. */
     reload: (why: string): boolean => {
       const fresh = loadRoom(configFolder)
       if (fresh.kind === 'refused') {
-        const first = sayFault(fresh.faults[0])
         log.error({ faults: fresh.faults.map(sayFault) }, 'the changed configuration is refused, the old one stays')
-        trouble('configuration', `the changed configuration is refused, the old one stays in force: ${first}`)
+        trouble(
+          'configuration',
+          `the changed configuration is refused, the old one stays in force: ${sayFault(fresh.faults[0])}`,
+        )
         note()
         return false
       }
       trouble('configuration', null)
-      if (fresh.room.config.sha256 === inForce.config.sha256) {
-        note()
-        return false
+      const changed = fresh.room.config.sha256 !== inForce.config.sha256
+      if (changed) {
+        trouble('restart', needsRestart(fresh.room, inForce))
+        inForce = fresh.room
+        store.records.configurationInForce(inForce.config, now())
+        log.info({ why, sha256: inForce.config.sha256 }, 'a new configuration is in force')
       }
-      const { dataFolder: folder, web } = fresh.room.config
-      const restart =
-        folder !== dataFolder || web?.host !== inForce.config.web?.host || web?.port !== inForce.config.web?.port
-      trouble('restart', restart ? 'the data folder or the listening address changed: restart the daemon' : null)
-      inForce = fresh.room
-      store.records.configurationInForce(inForce.config, now())
-      log.info({ why, sha256: inForce.config.sha256 }, 'a new configuration is in force')
       note()
-      return true
+      return changed
     },
 
     tick: (): void => {
@@ -163,9 +152,9 @@ export const openHouse = (configFolder: string, log: Logger) => {
     work: working.run,
     sendLetters: sending.run,
     judgeTimes,
-    note,
 
     close: async (): Promise<void> => {
+      await intake?.stop()
       await working.idle()
       await sending.idle()
       note()
@@ -176,27 +165,20 @@ export const openHouse = (configFolder: string, log: Logger) => {
   }
 }
 
-export type House = ReturnType<typeof openHouse>
+const mustLoad = (configFolder: string): RoomInForce => {
+  const loaded = loadRoom(configFolder)
+  if (loaded.kind === 'refused') throw new FaultError(loaded.faults, EXIT.config)
+  return loaded.room
+}
 
-/** One run at a time; a kick during a run makes one more follow. */
-const singleFlight = (job: () => Promise<void>) => {
-  let running: Promise<void> | null = null
-  let again = false
-  const run = (): Promise<void> => {
-    if (running !== null) {
-      again = true
-      return running
-    }
-    running = (async () => {
-      do {
-        again = false
-        await job()
-      } while (again)
-      running = null
-    })()
-    return running
-  }
-  return { run, kick: (): void => void run(), idle: (): Promise<void> => running ?? Promise.resolve() }
+const needsRestart = ({ config: fresh }: RoomInForce, { config: old }: RoomInForce): string | null =>
+  fresh.dataFolder !== old.dataFolder || fresh.web?.host !== old.web?.host || fresh.web?.port !== old.web?.port
+    ? 'the data folder or the listening address changed in the configuration: restart the daemon'
+    : null
+
+const tellLog = (log: Logger, event: IntakeEvent): void => {
+  if ('fault' in event) log.warn({ instrument: event.instrument, kind: event.kind }, sayFault(event.fault))
+  else log.info(event, 'intake: in order again')
 }
 
 /** Settling can be hurried where files are known to be written at once (tests, the demo). */

@@ -1,8 +1,7 @@
 import { setTimeout as wait } from 'node:timers/promises'
 import { watch } from 'chokidar'
-import { startIntake } from '../intake/index.ts'
 import { startWeb } from '../web/index.ts'
-import { type House, openHouse, type Stop } from './house.ts'
+import { openHouse, type Stop } from './house.ts'
 import { startLog } from './log.ts'
 
 /** How often the daemon looks up by itself: letters due, overdue samples, what it notes of itself. */
@@ -17,14 +16,9 @@ export const runDaemon = async (configFolder: string): Promise<void> => {
   const stops: Stop[] = []
   const asked = signalled()
   try {
-    let intake = startIntake(house.room().config.instruments, house.intakePorts(), house.intakeOptions)
-    house.watchIntake(() => intake.state())
-    house.noteIntakeWaiting(() => intake.waiting())
-    stops.push(() => intake.stop())
+    await house.takeIn({})
     const reload = async (why: string): Promise<void> => {
-      if (!house.reload(why)) return
-      await intake.stop()
-      intake = startIntake(house.room().config.instruments, house.intakePorts(), house.intakeOptions)
+      if (house.reload(why)) await house.takeIn({})
     }
     stops.push(watchConfiguration(configFolder, () => void reload('a file of it was saved')))
     const onHangUp = () => void reload('SIGHUP')
@@ -47,21 +41,11 @@ export const runDaemon = async (configFolder: string): Promise<void> => {
 export const runOnce = async (configFolder: string): Promise<void> => {
   const house = openHouse(configFolder, startLog(process.env.TENDQ_LOG_LEVEL ?? 'warn'))
   try {
-    const intake = startIntake(house.room().config.instruments, house.intakePorts(), {
-      ...house.intakeOptions,
-      watch: false,
-    })
-    house.watchIntake(() => intake.state())
-    house.noteIntakeWaiting(() => intake.waiting())
-    try {
-      await intake.settleAll()
-      await house.work()
-      await house.judgeTimes()
-      await house.sendLetters()
-      house.note()
-    } finally {
-      await intake.stop()
-    }
+    const intake = await house.takeIn({ once: true })
+    await intake.settleAll()
+    await house.work()
+    await house.judgeTimes()
+    await house.sendLetters()
   } finally {
     await house.close()
   }
@@ -86,5 +70,3 @@ const watchConfiguration = (folder: string, changed: () => void): Stop => {
   watcher.on('error', () => undefined)
   return () => watcher.close()
 }
-
-export type { House }

@@ -20,18 +20,20 @@ export const judgements = (db: Db) => {
   const add = db.prepare(
     `INSERT INTO judgement (spectrum, rule, outcome, what, occasion, evidence, at) VALUES (?, ?, ?, ?, ?, ?, ?)`,
   )
-  const before = db.prepare<
+  // replicates of one occasion are judged each time one comes: the last word counts
+  const decidedBefore = db.prepare<
     { rule: string; sample: string; instrument: string; before: number; limit: number },
     { outcome: JudgedAs; occasion: number }
   >(
-    `SELECT j.outcome, j.occasion, max(j.id) AS newest FROM judgement j JOIN spectrum s ON s.id = j.spectrum
-      WHERE j.rule = @rule AND s.sample = @sample AND s.instrument = @instrument AND j.occasion < @before
-        AND s.measured_at < @before
+    `SELECT j.outcome, j.occasion, max(j.id) FROM judgement j JOIN spectrum s ON s.id = j.spectrum
+      WHERE s.sample = @sample AND s.instrument = @instrument AND s.measured_at < @before
+        AND j.rule = @rule AND j.occasion < @before AND j.outcome NOT IN ('gathering', 'undecided')
       GROUP BY j.occasion ORDER BY j.occasion DESC LIMIT @limit`,
   )
-  const newestOccasion = db.prepare<[string, string], { at: number | null }>(
-    `SELECT max(j.occasion) AS at FROM judgement j JOIN spectrum s ON s.id = j.spectrum
-      WHERE s.sample = ? AND s.instrument = ?`,
+  const later = db.prepare<{ rule: string; sample: string; instrument: string; after: number }, { n: number }>(
+    `SELECT count(*) AS n FROM spectrum s JOIN judgement j ON j.spectrum = s.id
+      WHERE s.sample = @sample AND s.instrument = @instrument AND s.measured_at > @after
+        AND j.rule = @rule AND j.occasion > @after AND j.outcome NOT IN ('gathering', 'undecided')`,
   )
 
   return {
@@ -39,16 +41,16 @@ export const judgements = (db: Db) => {
       add.run(row.spectrum, row.rule, row.outcome, row.what, row.occasion, JSON.stringify(row.evidence), row.at)
     },
 
-    /** Outcomes of earlier occasions, newest first. */
-    before: (
+    /** Decided outcomes of earlier occasions, newest first. */
+    decidedBefore: (
       of: { rule: string; sample: string; instrument: string },
       occasion: number,
       limit: number,
     ): readonly { readonly outcome: JudgedAs; readonly occasion: number }[] =>
-      before.all({ ...of, before: occasion, limit }),
+      decidedBefore.all({ ...of, before: occasion, limit }),
 
-    /** Time of the newest occasion judged so far; null when there is none. */
-    newestOccasion: (sample: string, instrument: string): number | null =>
-      newestOccasion.get(sample, instrument)?.at ?? null,
+    /** Whether an occasion after this one has been decided already. */
+    hasLater: (of: { rule: string; sample: string; instrument: string }, occasion: number): boolean =>
+      (later.get({ ...of, after: occasion })?.n ?? 0) > 0,
   }
 }

@@ -49,6 +49,9 @@ export const spectra = (db: Db) => {
   const one = db.prepare<[number], SpectrumRow>(
     `SELECT id, arrival, instrument, sample, measured_at, as_read, x, y FROM spectrum WHERE id = ?`,
   )
+  const first = db.prepare<[string], { at: number | null }>(
+    `SELECT min(measured_at) AS at FROM spectrum WHERE sample = ?`,
+  )
 
   return {
     add: (arrival: number, instrument: string, raw: RawSpectrum, identity: Identity): number => {
@@ -66,6 +69,9 @@ export const spectra = (db: Db) => {
       )
       return Number(added.lastInsertRowid)
     },
+
+    /** Time of the sample's first spectrum; null when there is none. */
+    firstMeasuredAt: (sample: string): number | null => first.get(sample)?.at ?? null,
 
     get: (id: number): StoredSpectrum | null => {
       const row = one.get(id)

@@ -1,0 +1,111 @@
+import { stepAlarm } from '../alarms/index.ts'
+import type { CompiledRule, Judgement } from '../rules/types.ts'
+import type { Window } from '../series/types.ts'
+import type { AlarmKey, StoredAlarm } from '../store/alarms.ts'
+import type { JustKept } from './judge.ts'
+import { addLetter } from './letter.ts'
+import type { Stations } from './pipeline.ts'
+import { messageOf, sampleFacts, type UntoldFacts } from './tell.ts'
+
+export interface Judged {
+  readonly rule: CompiledRule
+  readonly judgement: Judgement
+  /** Time of the occasion judged. */
+  readonly occasion: number
+  readonly window: Window
+  readonly kept: JustKept
+}
+
+/** Moves the alarm of a sample by one judgement: `persist` occasions in a row ring it, one clears it. */
+export const advanceAlarm = (judged: Judged, stations: Stations): void => {
+  const { rule, judgement, occasion, kept } = judged
+  const { store } = stations
+  const { outcome } = judgement
+  if (outcome.kind === 'undecided') return
+  const { name, persist } = rule.definition
+  const key: AlarmKey = { rule: name, of: 'sample', subject: kept.subject.sample }
+  const on = kept.subject.instrument.name
+  const of = { rule: name, sample: kept.subject.sample, instrument: on }
+  const before = store.alarms.watch(key)
+  const row = outcome.kind === 'rings' ? [occasion, ...ringingBefore(of, occasion, stations)] : []
+  const was = before[on] ?? false
+  // a spectrum that comes late is judged at its own place: it may ring, but later ones decide whether all is well
+  const isLate = store.judgements.hasLater(of, occasion)
+  const is =
+    outcome.kind === 'rings' ? was || row.length >= persist : outcome.kind === 'clears' && !isLate ? false : was
+  if (is !== was) store.alarms.setWatch(key, on, is)
+  const isActive = Object.entries({ ...before, [on]: is }).some(([, active]) => active)
+  moveAlarm(key, isActive, row.length, rule, stations, () => sampleFacts(judged, row, stations))
+}
+
+/** Occasions in a row, before this one, on which the rule rang; undecided ones neither add nor break. Newest first. */
+const ringingBefore = (
+  of: { rule: string; sample: string; instrument: string },
+  occasion: number,
+  { store }: Stations,
+): readonly number[] => {
+  const decided = store.judgements.decidedBefore(of, occasion, LONGEST_ROW)
+  const broken = decided.findIndex(({ outcome }) => outcome !== 'rings')
+  return (broken === -1 ? decided : decided.slice(0, broken)).map((one) => one.occasion)
+}
+
+/** How far back a row of ringing occasions is counted. */
+const LONGEST_ROW = 1_000
+
+/** Takes the alarm's condition as true or false, and does what the alarm's life asks for: row, event, letter. */
+export const moveAlarm = (
+  key: AlarmKey,
+  isActive: boolean,
+  spectra: number,
+  { definition }: CompiledRule,
+  stations: Stations,
+  factsNow: () => UntoldFacts,
+): void => {
+  const { store, now } = stations
+  const alarm: Omit<StoredAlarm, 'id'> = store.alarms.find(key) ?? {
+    ...key,
+    study: null,
+    priority: definition.priority,
+    state: 'normal',
+    active: false,
+    latch: definition.latch,
+    raisedAt: null,
+    acknowledgedAt: null,
+    acknowledgedBy: null,
+    returnedAt: null,
+    spectra: 0,
+    diagnosis: null,
+    confidence: null,
+    message: definition.title,
+  }
+  if (!isActive && !alarm.active) return
+  if (isActive && alarm.active) {
+    store.alarms.put({ ...alarm, spectra: Math.max(spectra, alarm.spectra) })
+    return
+  }
+  const life = { state: alarm.state, active: alarm.active, consecutive: 0, latch: alarm.latch }
+  const step = stepAlarm(life, isActive ? 'rings' : 'clears', 1)
+  if (step.kind === 'refused') return
+  const at = now()
+  const facts = factsNow()
+  const message = messageOf(facts)
+  const id = store.alarms.put({
+    ...alarm,
+    study: facts.study,
+    priority: definition.priority,
+    latch: definition.latch,
+    state: step.life.state,
+    active: step.life.active,
+    raisedAt: isActive ? at : alarm.raisedAt,
+    returnedAt: isActive ? null : at,
+    acknowledgedAt: isActive ? null : alarm.acknowledgedAt,
+    acknowledgedBy: isActive ? null : alarm.acknowledgedBy,
+    spectra: isActive ? spectra : alarm.spectra,
+    diagnosis: isActive ? facts.diagnosis : alarm.diagnosis,
+    confidence: isActive ? facts.confidence : alarm.confidence,
+    message: isActive ? message : alarm.message,
+  })
+  store.alarms.event(id, at, isActive ? 'raised' : 'returned', 'tendq', message)
+  if (step.notice === 'raised' || step.notice === 'returned' || step.notice === 're-alarmed')
+    addLetter({ ...facts, alarm: id, event: step.notice }, stations)
+}
