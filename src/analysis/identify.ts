@@ -79,8 +79,7 @@ const timeOf = (
       : written.offset === null
         ? DateTime.fromISO(written.local, { zone: timeZone })
         : DateTime.fromISO(`${written.local}${written.offset}`)
-  if (read?.isValid)
-    return { measuredAt: read.toMillis(), flags: [], remarks: ambiguity(read, written?.offset === null) }
+  if (read?.isValid) return { flags: [], ...first(read, written?.offset === null) }
   return {
     measuredAt: Math.round(mtimeMs),
     flags: ['time-from-file-date'],
@@ -90,8 +89,10 @@ const timeOf = (
   }
 }
 
-/** When clocks go back an hour happens twice. */
-const ambiguity = (time: DateTime, local: boolean): readonly string[] =>
-  local && time.getPossibleOffsets().length > 1
-    ? [`${time.toISO({ includeOffset: false })} happened twice that night; the first was taken`]
-    : []
+/** When clocks go back an hour happens twice: of two possible times the first is taken, and said so. */
+const first = (time: DateTime, isLocal: boolean): { measuredAt: number; remarks: readonly string[] } => {
+  const possible = isLocal ? time.getPossibleOffsets() : [time]
+  const measuredAt = Math.min(...possible.map((one) => one.toMillis()))
+  const local = time.toISO({ includeOffset: false, suppressMilliseconds: true })
+  return { measuredAt, remarks: possible.length > 1 ? [`${local} happened twice that night; the first was taken`] : [] }
+}
