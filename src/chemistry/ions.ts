@@ -10,13 +10,38 @@ export interface KnownIon extends Ion {
   /** Other published free-ion B, cm⁻¹. */
   readonly otherFreeIonBPerCm: readonly number[]
   readonly cOverBSource: string
-  /** The spin state that octahedral complexes of the ion mostly have; null where only one exists. */
-  readonly usualSpin: 'high' | 'low' | null
 }
 
 const JOLLY = 'Jolly, Modern Inorganic Chemistry'
 const MEMORY = 'from memory'
 const TS = 'value of the Tanabe-Sugano diagrams'
+
+/** Jørgensen's g (cm⁻¹), Δ = f g; times 1.1, the middle of f from water to amines, it is what to expect of a complex. */
+const G: Readonly<Record<string, number>> = {
+  'Mn2+': 8000,
+  'Ni2+': 8700,
+  'Co2+': 9000,
+  'V2+': 12000,
+  'Fe3+': 14000,
+  'Cr3+': 17400,
+  'Co3+': 18200,
+  'Ru2+': 20000,
+  'Mn4+': 24000,
+  'Mo3+': 24600,
+  'Rh3+': 27000,
+  'Ir3+': 32000,
+  'Pt4+': 36000,
+}
+
+/** Δ of the hexaaqua ion or alum where g is not in the list; from memory. */
+const AQUA: Readonly<Record<string, number>> = {
+  'Ti3+': 20300,
+  'V3+': 18500,
+  'Cr2+': 14000,
+  'Mn3+': 21000,
+  'Fe2+': 10000,
+  'Cu2+': 12500,
+}
 
 type Row = readonly [
   symbol: string,
@@ -66,6 +91,7 @@ export const IONS: readonly KnownIon[] = ROWS.map(
     uCOverB: 0.3,
     cOverBSource,
     usualSpin: usualSpin ?? null,
+    typicalDeltaPerCm: G[symbol] === undefined ? (AQUA[symbol] ?? null) : 1.1 * G[symbol],
   }),
 )
 

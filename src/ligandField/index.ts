@@ -1,3 +1,7 @@
+export { assignBands } from './assign.ts'
 export type { Field } from './field.ts'
+export { faultsOfField } from './field.ts'
 export { levels } from './levels.ts'
+export { solveParameters } from './solve.ts'
+export { type TermScheme, termScheme, usualSpin } from './terms.ts'
 export type * from './types.ts'

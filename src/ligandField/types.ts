@@ -14,6 +14,10 @@ export interface Ion {
   /** Typical C/B and its standard uncertainty, a prior where no spin-forbidden band is seen. */
   readonly cOverB: number
   readonly uCOverB: number
+  /** The spin state that octahedral complexes of the ion mostly have; null or absent where only one exists. */
+  readonly usualSpin?: Spin | null
+  /** Δ of an octahedral complex with ligands from the middle of the series; null or absent where not known. */
+  readonly typicalDeltaPerCm?: number | null
 }
 
 /** One labelled level. */
@@ -74,6 +78,10 @@ export interface ParameterFit {
   readonly correlationDeltaB: number | null
   readonly chi2: number | null
   readonly degreesOfFreedom: number
+  /** Profile interval of B (k = 1) where the covariance is too crude; an end that χ² never reaches is null. */
+  readonly intervalBPerCm?: readonly [low: number | null, high: number | null]
+  /** Other parameters that fit the same bands, less plausible ones last. */
+  readonly alternatives?: readonly { readonly deltaPerCm: number; readonly bPerCm: number; readonly cPerCm: number }[]
   readonly flags: readonly Flag[]
   /** One sentence a flag: what is wrong and what would mend it. */
   readonly remarks: readonly string[]

@@ -1,0 +1,171 @@
+/**
+ * Which transition each observed band is. Every assignment of `hypotheses.ts` is weighed; the weight is a sum of log
+ * odds, each a rule of thumb of the trade (common practice) put into a number:
+ *
+ *   misfit         −χ²/2, with 2 % of a position as the error of the model beside the fit's own
+ *   B              β = B/B₀ is 0.72 ± 0.15; above 1.05 hardly ever; a pair of bands that no Δ and B give is out
+ *   Δ              within a factor 1.35 (k = 1) of what the ion's complexes usually have
+ *   intensity      spin-forbidden bands are ten times fainter and narrow, bands of one spin alike within ten,
+ *                  a two-electron band fainter by five
+ *   completeness   an allowed band that should lie among the observed ones, or in the visible below them, is missed
+ *   simplicity     a split, a forbidden or an unassigned band must earn its keep
+ *   hint           what the species' description expects
+ */
+import type { Flag } from '../spectrum/types.ts'
+import { dependenceOf } from './gather.ts'
+import { type Choice, type Hypothesis, hypotheses } from './hypotheses.ts'
+import { solveParameters } from './solve.ts'
+import { type TermScheme, termScheme, usualSpin } from './terms.ts'
+import type { AssignedBand, Assignment, Geometry, Ion, ObservedBand, ParameterFit, Spin } from './types.ts'
+
+const MODEL_ERROR = 0.02
+const FAINT = 0.3
+/** Longest wavenumber range in which most instruments would have shown a missing band, cm⁻¹. */
+const SEEN_ABOVE = 11500
+const AMBIGUOUS = 0.1
+
+const bell = (x: number): number => -(x * x) / 2
+
+/** The best assignment of bands (ascending) with its probability among all, and the runner-up. Spin null: the usual one. */
+export const assignBands = (
+  ion: Ion,
+  geometry: Geometry,
+  spin: Spin | null,
+  observed: readonly ObservedBand[],
+): Assignment => {
+  const scheme = termScheme(ion.d, geometry, spin ?? usualSpin(ion, geometry))
+  if (scheme === null || observed.length === 0)
+    return {
+      bands: observed.map(() => ({ role: null, term: null })),
+      probability: 0,
+      runnerUp: null,
+      flags: ['no-band'],
+    }
+  const tallest = Math.max(...observed.map(({ height }) => height))
+  const faint = observed.map(({ height, hint }) => height < FAINT * tallest || hint?.startsWith('sf') === true)
+  const weighed = hypotheses(scheme, faint)
+    .map((hypothesis) => ({ hypothesis, odds: weigh(ion, scheme, observed, hypothesis) }))
+    .filter(({ odds }) => odds > Number.NEGATIVE_INFINITY)
+    .sort((a, b) => b.odds - a.odds)
+  const best = weighed[0]!
+  const total = weighed.reduce((sum, { odds }) => sum + Math.exp(odds - best.odds), 0)
+  const second = weighed[1]
+  const secondProbability = second === undefined ? 0 : Math.exp(second.odds - best.odds) / total
+  const close = second !== undefined && secondProbability > AMBIGUOUS
+  return {
+    bands: best.hypothesis.map(said),
+    probability: 1 / total,
+    runnerUp: close ? { bands: second.hypothesis.map(said), probability: secondProbability } : null,
+    flags: flagsOf(scheme, best.hypothesis, close),
+  }
+}
+
+const said = (choice: Choice | null): AssignedBand => ({ role: choice?.role ?? null, term: choice?.term ?? null })
+
+const flagsOf = (scheme: TermScheme, hypothesis: Hypothesis, close: boolean): readonly Flag[] => {
+  const flags: Flag[] = []
+  if (hypothesis.every((choice) => choice === null)) flags.push('no-band')
+  if (hypothesis.some((choice) => choice?.half != null)) flags.push('split')
+  if (scheme.jahnTeller) flags.push('jahn-teller')
+  if (close) flags.push('ambiguous-assignment')
+  return flags
+}
+
+/** Log odds of one assignment, up to a constant; −∞ where it cannot be. */
+const weigh = (ion: Ion, scheme: TermScheme, observed: readonly ObservedBand[], hypothesis: Hypothesis): number => {
+  const bands = hypothesis.flatMap((choice, i) =>
+    choice === null ? [] : [{ role: choice.role, positionPerCm: observed[i]!.positionPerCm }],
+  )
+  const plain =
+    intensity(scheme, observed, hypothesis) + simplicity(scheme, observed, hypothesis) + hinted(observed, hypothesis)
+  if (bands.length === 0) return plain
+  const covariance = bands.map(({ positionPerCm }, i) => {
+    const own = observed.find((band) => band.positionPerCm === positionPerCm)!.uPositionPerCm
+    return bands.map((_, j) => (i === j ? (MODEL_ERROR * positionPerCm) ** 2 + own * own : 0))
+  })
+  const fit = solveParameters(ion, scheme.geometry, scheme.spin, bands, covariance)
+  if (fit.flags.includes('impossible-ratio')) return Number.NEGATIVE_INFINITY
+  return plain - (fit.chi2 ?? 0) / 2 + plausible(ion, scheme, fit) + complete(scheme, observed, hypothesis, fit)
+}
+
+const plausible = (ion: Ion, scheme: TermScheme, fit: ParameterFit): number => {
+  let odds = 0
+  if (fit.beta !== null) odds += bell((fit.beta - 0.72) / 0.15) + (fit.beta > 1.05 ? bell((fit.beta - 1.05) / 0.03) : 0)
+  const typical = ion.typicalDeltaPerCm
+  if (typical != null && fit.deltaPerCm !== null) {
+    const usual = scheme.geometry === 'tetrahedral' ? (4 / 9) * typical : typical
+    odds += bell(Math.log(fit.deltaPerCm / usual) / Math.log(1.35))
+  }
+  // a lone band that is not Δ explains little
+  if (fit.deltaPerCm === null && fit.bPerCm === null && !fit.flags.includes('split')) odds -= 3
+  return odds
+}
+
+const isTwoElectron = (scheme: TermScheme, role: string): boolean => scheme.ground.irrep === 'T1' && role === 'nu2'
+
+const intensity = (scheme: TermScheme, observed: readonly ObservedBand[], hypothesis: Hypothesis): number => {
+  const allowed = observed.filter((_, i) => hypothesis[i]?.role.startsWith('nu') === true)
+  const tallest = Math.max(...(allowed.length > 0 ? allowed : observed).map(({ height }) => height))
+  return hypothesis.reduce((odds, choice, i) => {
+    if (choice === null) return odds
+    const { height, widthPerCm } = observed[i]!
+    const below = Math.log10(Math.max(tallest, 1e-12) / Math.max(height, 1e-12))
+    if (choice.role.startsWith('sf')) return odds + bell(Math.max(0, 1 - below) / 0.3) - (widthPerCm > 2500 ? 1.5 : 0)
+    if (isTwoElectron(scheme, choice.role)) return odds + bell((below - 0.7) / 0.6)
+    return odds + bell(Math.max(0, below - 1) / 0.4)
+  }, 0)
+}
+
+const simplicity = (scheme: TermScheme, observed: readonly ObservedBand[], hypothesis: Hypothesis): number => {
+  let odds = 0
+  const top = observed.length - 1
+  hypothesis.forEach((choice, i) => {
+    // a strong last band may well be charge transfer
+    if (choice === null) odds -= i === top && observed[i]!.height > 3 * (observed[i - 1]?.height ?? 0) ? 1 : 3
+    else if (choice.role.startsWith('sf')) odds -= 1.5
+  })
+  const a = hypothesis.findIndex((choice) => choice?.half === 'a')
+  const b = hypothesis.findIndex((choice) => choice?.half === 'b')
+  if (a === -1 || b === -1) return odds
+  const [pair, single] = [observed[a]!, observed[b]!]
+  const areas = Math.log((pair.height * pair.widthPerCm) / (single.height * single.widthPerCm))
+  const isTriple = hypothesis[a]!.transition.upper[0]!.irrep.startsWith('T')
+  const apart = Math.abs(pair.positionPerCm - single.positionPerCm)
+  odds += bell((areas - (isTriple ? Math.LN2 : 0)) / 0.7) + bell(apart / 5000)
+  return odds - (scheme.jahnTeller ? 0.5 : 2) - (a > b ? 0.4 : 0)
+}
+
+const hinted = (observed: readonly ObservedBand[], hypothesis: Hypothesis): number =>
+  hypothesis.reduce((odds, choice, i) => {
+    const { hint } = observed[i]!
+    if (hint === null) return odds
+    if (choice?.role === hint) return odds + 5
+    return choice !== null && choice.transition.role === hint ? odds + 1 : odds - 3
+  }, 0)
+
+/** Bands that the parameters demand where they would have been seen. */
+const complete = (
+  scheme: TermScheme,
+  observed: readonly ObservedBand[],
+  hypothesis: Hypothesis,
+  fit: ParameterFit,
+): number => {
+  const { deltaPerCm: delta, bPerCm: b } = fit
+  if (delta === null || (b === null && scheme.ground.irrep !== 'A2')) return 0
+  const absent = scheme.transitions.filter(
+    ({ role, allowed }) =>
+      allowed && role.startsWith('nu') && !hypothesis.some((choice) => choice?.transition.role === role),
+  )
+  if (absent.length === 0 || b === null) return 0
+  const { model } = dependenceOf(scheme, absent)
+  const positions = new Float64Array(model.count)
+  model.evaluate(delta, b, fit.cPerCm ?? 4.5 * b, positions, new Float64Array(model.count * 3))
+  const lowest = observed[0]!.positionPerCm
+  const highest = observed.at(-1)!.positionPerCm
+  return absent.reduce((odds, { role }, i) => {
+    const at = positions[i]!
+    const hidden = observed.some((band) => Math.abs(band.positionPerCm - at) < band.widthPerCm / 3)
+    const seen = at > Math.min(lowest, SEEN_ABOVE) && at < highest
+    return odds - (seen && !hidden ? (isTwoElectron(scheme, role) ? 0.7 : 2.5) : 0)
+  }, 0)
+}
