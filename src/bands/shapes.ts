@@ -1,0 +1,94 @@
+/**
+ * The functions of a recipe and the nonlinear parameters the search runs over, two a component.
+ *
+ * band  φ(x) = exp(−4 ln2 u²), u = (x − p)/w; parameters p (centre) and w (full width at half maximum), cm⁻¹
+ * flank φ(x) = exp(b t − c t²), t = x − xₑ with xₑ the upper end of the window: a Gaussian of width w = √(4 ln2/c) about
+ *       p = xₑ + b/(2c). Of a tail the data tell value and slope at xₑ well, the centre hardly at all;
+ *       in (b, c) the ridge is straight, in (p, w) it is a parabola that a search crawls along.
+ */
+
+import type { Box } from './levenbergMarquardt.ts'
+import type { Recipe, RecipeComponent } from './types.ts'
+
+/** 4 ln 2 */
+export const FOUR_LN2 = 4 * Math.LN2
+/** Beyond this many widths a Gaussian is below 10⁻¹⁴ and left out. */
+const REACH = 3.4
+
+/** Start and box of the search. A flank's slope b reaches from flat to that of its narrowest, farthest Gaussian. */
+export const searchSpace = (recipe: Recipe): { readonly start: Float64Array; readonly box: Box } => {
+  const edge = recipe.windowPerCm[1]
+  const rows = recipe.components.flatMap((component) => parameterRows(component, edge))
+  return {
+    start: Float64Array.from(rows, (row) => row[0]),
+    box: { lower: Float64Array.from(rows, (row) => row[1]), upper: Float64Array.from(rows, (row) => row[2]) },
+  }
+}
+
+type Row = readonly [start: number, lower: number, upper: number]
+
+const parameterRows = (component: RecipeComponent, edge: number): readonly [Row, Row] => {
+  const { positionPerCm: p, widthPerCm: w, positionBoundsPerCm: pb, widthBoundsPerCm: wb } = component
+  if (component.kind === 'band')
+    return [
+      [p, pb[0], pb[1]],
+      [w, wb[0], wb[1]],
+    ]
+  const curvature = (width: number) => FOUR_LN2 / width ** 2
+  const slope = (position: number, width: number) => 2 * curvature(width) * Math.max(0, position - edge)
+  return [
+    [slope(p, w), slope(pb[0], wb[1]), slope(pb[1], wb[0])],
+    [curvature(w), curvature(wb[1]), curvature(wb[0])],
+  ]
+}
+
+/** Fills φ·weight and its two derivatives along one component. */
+export const fillColumns = (
+  kind: RecipeComponent['kind'],
+  first: number,
+  second: number,
+  edge: number,
+  x: Float64Array,
+  weight: Float64Array,
+  value: Float64Array,
+  byFirst: Float64Array,
+  bySecond: Float64Array,
+): void => {
+  const n = x.length
+  if (kind === 'flank') {
+    for (let i = 0; i < n; i++) {
+      const t = x[i]! - edge
+      const f = Math.exp(t * (first - second * t)) * weight[i]!
+      value[i] = f
+      byFirst[i] = t * f
+      bySecond[i] = -t * t * f
+    }
+    return
+  }
+  const inverse = 1 / second
+  const slope = 2 * FOUR_LN2 * inverse
+  for (let i = 0; i < n; i++) {
+    const u = (x[i]! - first) * inverse
+    if (u > REACH || u < -REACH) {
+      value[i] = 0
+      byFirst[i] = 0
+      bySecond[i] = 0
+    } else {
+      const f = Math.exp(-FOUR_LN2 * u * u) * weight[i]!
+      const d = slope * u * f
+      value[i] = f
+      byFirst[i] = d
+      bySecond[i] = d * u
+    }
+  }
+}
+
+/** The middle of the window, at which scatter is given. */
+export const scatterOrigin = (recipe: Recipe): number => (recipe.windowPerCm[0] + recipe.windowPerCm[1]) / 2
+
+/** Background term at wavenumber x: 1, or (x/x₀)ⁿ. */
+export const backgroundAt = (exponent: number, origin: number, x: number): number =>
+  exponent === 0 ? 1 : (x / origin) ** exponent
+
+export const backgroundExponents = (recipe: Recipe): readonly number[] =>
+  recipe.background.map((term) => (term.kind === 'constant' ? 0 : term.exponent))
