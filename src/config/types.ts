@@ -44,6 +44,8 @@ export interface Instrument {
   readonly dropFolder: string
   /** Glob relative to the drop folder. */
   readonly files: string
+  /** How arrivals are noticed; `auto` polls network file systems, which send no events. */
+  readonly watch: 'auto' | 'events' | 'polling'
   readonly reading: ReadingHints
   readonly sampleFrom: 'filename' | 'folder' | 'header'
   /** Named groups `sample` and optionally `time`. Null with `header`, or to take the whole name. */
@@ -84,7 +86,10 @@ export type Reference =
 export interface Study {
   readonly name: string
   readonly title: string
-  readonly species: string
+  /** Null only for a check study that measures a standard. */
+  readonly species: string | null
+  /** Name of the standard that a check study is compared with. */
+  readonly standard: string | null
   readonly kind: 'stability' | 'repeat' | 'check'
   /** `name` is exact or holds wildcards. */
   readonly samples: readonly { readonly name: string; readonly control: boolean }[]
@@ -136,6 +141,8 @@ export interface RuleDefinition {
         readonly h: number
         readonly lambda: number
         readonly l: number
+        /** Shewhart: tests by name, `western-electric-1` … `nelson-8`; absent: one point beyond `l` σ. */
+        readonly tests?: readonly string[]
       }
     | { readonly kind: 'overdue'; readonly times: number }
     | { readonly kind: 'always'; readonly rule: 'unjudged' | 'not-this-species' | 'common-change' }
@@ -144,6 +151,8 @@ export interface RuleDefinition {
 export interface Standard {
   readonly name: string
   readonly title: string
+  /** Certificate or publication that the figures come from. */
+  readonly source: string
   readonly lines: readonly {
     readonly nm: number
     readonly uNm: number | null

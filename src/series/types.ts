@@ -17,6 +17,8 @@ export interface Occasion {
   readonly u: Readonly<Record<Quantity, number | null>>
   /** Absorbance at a wavelength in nm as measured, by interpolation; null outside the window. */
   readonly absorbanceAt: (nm: number) => number | null
+  /** Its standard uncertainty (repeatability), where it is known. */
+  readonly uAbsorbanceAt?: (nm: number) => number | null
 }
 
 /** What a sample is compared with. `gathering`: not yet enough occasions. */
@@ -30,6 +32,7 @@ export type ReferenceState =
       /** Time of the newest reference occasion; null for typed values. */
       readonly until: number | null
       readonly absorbanceAt: (nm: number) => number | null
+      readonly uAbsorbanceAt?: (nm: number) => number | null
     }
   | { readonly kind: 'gathering'; readonly have: number; readonly need: number }
   | { readonly kind: 'refused'; readonly why: string }
@@ -44,4 +47,16 @@ export interface Window {
   readonly pathMm: number | null
   readonly concentrationMolPerL: number | null
   readonly medium: 'air' | 'vacuum'
+  /** What only the rules that are always there look at. */
+  readonly standing?: Standing
+}
+
+/** Facts about the spectrum judged, beside its numbers. */
+export interface Standing {
+  /** `no-band`: the spectrum holds no band at all (blank cell); `unfitted`: the fit failed for another reason. */
+  readonly fit: 'fitted' | 'no-band' | 'unfitted'
+  /** Rules that stayed undecided on this occasion for another reason than gathering. */
+  readonly undecided: readonly string[]
+  /** Where the species has its bands. Vacuum wavenumbers, cm⁻¹. */
+  readonly expected: readonly { readonly role: string; readonly nearPerCm: number; readonly withinPerCm: number }[]
 }
