@@ -3,7 +3,7 @@
  * odds, each a rule of thumb of the trade (common practice) put into a number:
  *
  *   misfit         −χ²/2, with 2 % of a position as the error of the model beside the fit's own
- *   B              β = B/B₀ is 0.72 ± 0.15; above 1.05 hardly ever; a pair of bands that no Δ and B give is out
+ *   B              β = B/B₀ is 0.70 ± 0.15; outside 0.45 to 1.05 hardly ever; a pair of bands that no Δ and B give is out
  *   Δ              within a factor 1.35 (k = 1) of what the ion's complexes usually have
  *   intensity      spin-forbidden bands are ten times fainter and narrow, bands of one spin alike within ten,
  *                  a two-electron band fainter by five
@@ -12,8 +12,8 @@
  *   hint           what the species' description expects
  */
 import type { Flag } from '../spectrum/types.ts'
-import { dependenceOf } from './gather.ts'
-import { type Choice, type Hypothesis, hypotheses } from './hypotheses.ts'
+import { type Band, dependenceOf, gather } from './gather.ts'
+import { type Choice, type Hypothesis, hypotheses, isTriple } from './hypotheses.ts'
 import { solveParameters } from './solve.ts'
 import { type TermScheme, termScheme, usualSpin } from './terms.ts'
 import type { AssignedBand, Assignment, Geometry, Ion, ObservedBand, ParameterFit, Spin } from './types.ts'
@@ -85,20 +85,41 @@ const weigh = (ion: Ion, scheme: TermScheme, observed: readonly ObservedBand[], 
   })
   const fit = solveParameters(ion, scheme.geometry, scheme.spin, bands, covariance)
   if (fit.flags.includes('impossible-ratio')) return Number.NEGATIVE_INFINITY
-  return plain - (fit.chi2 ?? 0) / 2 + plausible(ion, scheme, fit) + complete(scheme, observed, hypothesis, fit)
+  const field = plausible(ion, scheme, fit) + lone(ion, scheme, fit, bands)
+  return plain - (fit.chi2 ?? 0) / 2 + field + complete(scheme, observed, hypothesis, fit)
 }
 
 const plausible = (ion: Ion, scheme: TermScheme, fit: ParameterFit): number => {
   let odds = 0
-  if (fit.beta !== null) odds += bell((fit.beta - 0.72) / 0.15) + (fit.beta > 1.05 ? bell((fit.beta - 1.05) / 0.03) : 0)
+  if (fit.beta !== null) {
+    const beyond = Math.max(0, fit.beta - 1.05, 0.45 - fit.beta)
+    odds += bell((fit.beta - 0.7) / 0.15) + bell(beyond / 0.03)
+  }
   const typical = ion.typicalDeltaPerCm
   if (typical != null && fit.deltaPerCm !== null) {
     const usual = scheme.geometry === 'tetrahedral' ? (4 / 9) * typical : typical
     odds += bell(Math.log(fit.deltaPerCm / usual) / Math.log(1.35))
   }
-  // a lone band that is not Δ explains little
-  if (fit.deltaPerCm === null && fit.bPerCm === null && !fit.flags.includes('split')) odds -= 3
   return odds
+}
+
+/** A transition that fixes neither Δ nor B is held against where it lies at the usual Δ and B = 0.8 B₀. */
+const lone = (ion: Ion, scheme: TermScheme, fit: ParameterFit, bands: readonly Band[]): number => {
+  const typical = ion.typicalDeltaPerCm
+  if (fit.deltaPerCm !== null || fit.bPerCm !== null) return 0
+  if (typical == null || ion.freeIonBPerCm === null) return -3
+  const { transitions, positionsPerCm } = gather(
+    scheme,
+    bands,
+    bands.map(() => bands.map(() => 0)),
+  )
+  if (transitions.length === 0) return -3
+  const { model } = dependenceOf(scheme, transitions)
+  const at = new Float64Array(model.count)
+  const b = 0.8 * ion.freeIonBPerCm
+  const delta = scheme.geometry === 'tetrahedral' ? (4 / 9) * typical : typical
+  model.evaluate(delta, b, ion.cOverB * b, at, new Float64Array(model.count * 3))
+  return bell(Math.log(positionsPerCm[0]! / at[0]!) / 0.2) - 0.5
 }
 
 const isTwoElectron = (scheme: TermScheme, role: string): boolean => scheme.ground.irrep === 'T1' && role === 'nu2'
@@ -110,29 +131,36 @@ const intensity = (scheme: TermScheme, observed: readonly ObservedBand[], hypoth
     if (choice === null) return odds
     const { height, widthPerCm } = observed[i]!
     const below = Math.log10(Math.max(tallest, 1e-12) / Math.max(height, 1e-12))
-    if (choice.role.startsWith('sf')) return odds + bell(Math.max(0, 1 - below) / 0.3) - (widthPerCm > 2500 ? 1.5 : 0)
+    if (choice.role.startsWith('sf')) return odds + bell(Math.max(0, 1 - below) / 0.5) - (widthPerCm > 2500 ? 1.5 : 0)
     if (isTwoElectron(scheme, choice.role)) return odds + bell((below - 0.7) / 0.6)
     return odds + bell(Math.max(0, below - 1) / 0.4)
   }, 0)
 }
 
+/** Below charge transfer there is little but d–d bands: only the last one, above all if strong, is easily left out. */
+const unassigned = (observed: readonly ObservedBand[], i: number): number => {
+  const tallest = Math.max(...observed.map(({ height }) => height))
+  if (i < observed.length - 1) return observed[i]!.height < 0.05 * tallest ? 2.5 : 4
+  return i > 0 && observed[i]!.height > 3 * observed[i - 1]!.height ? 1 : 3
+}
+
 const simplicity = (scheme: TermScheme, observed: readonly ObservedBand[], hypothesis: Hypothesis): number => {
   let odds = 0
-  const top = observed.length - 1
   hypothesis.forEach((choice, i) => {
-    // a strong last band may well be charge transfer
-    if (choice === null) odds -= i === top && observed[i]!.height > 3 * (observed[i - 1]?.height ?? 0) ? 1 : 3
-    else if (choice.role.startsWith('sf')) odds -= 1.5
+    if (choice === null) odds -= unassigned(observed, i)
+    // a higher spin-forbidden band without the lower ones is the less likely
+    else if (choice.role.startsWith('sf')) odds -= 1 + 0.7 * Number(choice.role.slice(2))
   })
   const a = hypothesis.findIndex((choice) => choice?.half === 'a')
   const b = hypothesis.findIndex((choice) => choice?.half === 'b')
   if (a === -1 || b === -1) return odds
   const [pair, single] = [observed[a]!, observed[b]!]
   const areas = Math.log((pair.height * pair.widthPerCm) / (single.height * single.widthPerCm))
-  const isTriple = hypothesis[a]!.transition.upper[0]!.irrep.startsWith('T')
+  const { transition } = hypothesis[a]!
   const apart = Math.abs(pair.positionPerCm - single.positionPerCm)
-  odds += bell((areas - (isTriple ? Math.LN2 : 0)) / 0.7) + bell(apart / 5000)
-  return odds - (scheme.jahnTeller ? 0.5 : 2) - (a > b ? 0.4 : 0)
+  odds += bell((areas - (isTriple(transition) ? Math.LN2 : 0)) / 1.2) + bell(apart / 5000)
+  // seldom is any but the first band seen to be split
+  return odds - (scheme.jahnTeller ? 0.5 : 1.7) - (transition.role === 'nu1' ? 0 : 1.5) - (a > b ? 1 : 0)
 }
 
 const hinted = (observed: readonly ObservedBand[], hypothesis: Hypothesis): number =>

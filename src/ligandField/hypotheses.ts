@@ -22,9 +22,10 @@ const whole = (transition: Transition): Choice => ({
 })
 
 /** Names of what a fourfold distortion leaves of a term: E and A2 of T1, E and B2 of T2; the halves of E keep its name. */
-const halfTerm = ({ upper, label }: Transition, half: 'a' | 'b'): string => {
+const halfTerm = (transition: Transition, half: 'a' | 'b'): string => {
+  const { upper, label } = transition
   const term = upper[0]!
-  if (!term.irrep.startsWith('T')) return label
+  if (!isTriple(transition)) return label
   const parity = label.includes('g') ? 'g' : ''
   const irrep = half === 'a' ? 'E' : term.irrep === 'T1' ? 'A2' : 'B2'
   return `${term.multiplicity}${irrep}${parity}(${label})`
@@ -44,10 +45,16 @@ const crosses = (scheme: TermScheme, a: Transition, b: Transition): boolean =>
 /** Whether `next` may lie above `before`. Spin-forbidden bands may lie anywhere among the allowed, in their own order. */
 const mayFollow = (scheme: TermScheme, before: Choice, next: Choice): boolean => {
   const [a, b] = [before.transition, next.transition]
-  if (a === b) return before.half !== null && next.half !== null && before.half !== next.half
+  if (a === b) return areHalves(before, next)
   if (a.role.slice(0, 2) !== b.role.slice(0, 2)) return true
   return scheme.transitions.indexOf(a) < scheme.transitions.indexOf(b) || crosses(scheme, a, b)
 }
+
+/** Two halves of one term; those of an E term are alike, so the lower one is a. */
+const areHalves = (before: Choice, next: Choice): boolean =>
+  before.half !== null && next.half !== null && (before.half === 'a' || isTriple(before.transition))
+
+export const isTriple = ({ upper }: Transition): boolean => upper[0]!.irrep.startsWith('T')
 
 /** At most this many bands are called spin-forbidden beside allowed ones, and one transition is split. */
 const MOST_FORBIDDEN = 2

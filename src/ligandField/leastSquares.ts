@@ -8,7 +8,7 @@
  * direction alone, which is scanned over all Δ/B (and C/B where C is free). Every local minimum of the scan is then
  * sharpened by Levenberg–Marquardt steps, so a second solution is not overlooked.
  */
-import type { BandModel } from './model.ts'
+import { type BandModel, direction, STEPS, scanOf } from './model.ts'
 
 export interface Prior {
   readonly cOverB: number
@@ -193,29 +193,6 @@ export const descend = (problem: Problem, start: readonly number[]): Minimum => 
   return { p, chi2, normal, iterations }
 }
 
-const STEPS = 192
-const scans = new WeakMap<BandModel, Map<string, Float64Array>>()
-
-/** Positions along the directions of the scan at one C/B: rows of `count`; Δ : B = u : (1 − u)/10. */
-const scanAt = (model: BandModel, cOverB: number): Float64Array => {
-  const ofModel = scans.get(model) ?? new Map<string, Float64Array>()
-  scans.set(model, ofModel)
-  const key = cOverB.toFixed(3)
-  const known = ofModel.get(key)
-  if (known !== undefined) return known
-  const table = new Float64Array((STEPS - 1) * model.count)
-  for (let i = 1; i < STEPS; i += 1) {
-    const [delta, b] = direction(i)
-    model.evaluate(delta, b, cOverB * b, positions, derivatives)
-    for (let j = 0; j < model.count; j += 1) table[(i - 1) * model.count + j] = positions[j]!
-  }
-  if (ofModel.size > 64) ofModel.clear()
-  ofModel.set(key, table)
-  return table
-}
-
-const direction = (i: number): readonly [delta: number, b: number] => [i / STEPS, (1 - i / STEPS) / 10]
-
 const profile = new Float64Array(STEPS + 1)
 const scale = new Float64Array(STEPS + 1)
 
@@ -223,7 +200,9 @@ const scale = new Float64Array(STEPS + 1)
 const scan = (problem: Problem, cOverB: number, starts: number[][]): void => {
   const { model, observed, whitener } = problem
   const n = model.count
-  const table = scanAt(model, cOverB)
+  const table = scanOf(model.scheme, cOverB)
+  const width = model.scheme.transitions.length
+  const { columns } = model
   const y = new Float64Array(n)
   for (let i = 0; i < n; i += 1) for (let j = 0; j <= i; j += 1) y[i]! += whitener[i * n + j]! * observed[j]!
   profile[0] = Number.POSITIVE_INFINITY
@@ -233,7 +212,7 @@ const scan = (problem: Problem, cOverB: number, starts: number[][]): void => {
     let fy = 0
     for (let i = 0; i < n; i += 1) {
       let f = 0
-      for (let j = 0; j <= i; j += 1) f += whitener[i * n + j]! * table[(k - 1) * n + j]!
+      for (let j = 0; j <= i; j += 1) f += whitener[i * n + j]! * table[(k - 1) * width + columns[j]!]!
       ff += f * f
       fy += f * y[i]!
     }

@@ -8,8 +8,11 @@ import { sumBlock } from './levels.ts'
 import type { Term, TermScheme, Transition } from './terms.ts'
 
 export interface BandModel {
+  readonly scheme: TermScheme
   /** Number of bands. */
   readonly count: number
+  /** Which of the scheme's transitions they are. */
+  readonly columns: readonly number[]
   /** Writes positions (cm⁻¹, from the ground term) and derivatives by Δ, B, C (rows of three) at (Δ, B, C). */
   readonly evaluate: (delta: number, b: number, c: number, positions: Float64Array, derivatives: Float64Array) => void
 }
@@ -64,7 +67,8 @@ export const bandModel = (scheme: TermScheme, transitions: readonly Transition[]
       }
     }
   }
-  return { count: transitions.length, evaluate }
+  const columns = transitions.map((transition) => scheme.transitions.indexOf(transition))
+  return { scheme, count: transitions.length, columns, evaluate }
 }
 
 const expectation = (matrix: Float64Array, v: Float64Array, at: number, n: number): number => {
@@ -75,4 +79,30 @@ const expectation = (matrix: Float64Array, v: Float64Array, at: number, n: numbe
     sum += v[at + i]! * row
   }
   return sum
+}
+
+/** Directions of a scan: Δ : B = u : (1 − u)/10 with u = 1/STEPS … (STEPS − 1)/STEPS, so Δ/B from 0.05 to 1900. */
+export const STEPS = 192
+
+export const direction = (i: number): readonly [delta: number, b: number] => [i / STEPS, (1 - i / STEPS) / 10]
+
+const scans = new WeakMap<TermScheme, Map<string, Float64Array>>()
+
+/** Positions of all transitions of a scheme along the directions at one C/B, a row each; kept, whatever bands are asked. */
+export const scanOf = (scheme: TermScheme, cOverB: number): Float64Array => {
+  const ofScheme = scans.get(scheme) ?? new Map<string, Float64Array>()
+  scans.set(scheme, ofScheme)
+  const key = cOverB.toFixed(3)
+  const known = ofScheme.get(key)
+  if (known !== undefined) return known
+  const { count, evaluate } = bandModel(scheme, scheme.transitions)
+  const table = new Float64Array((STEPS - 1) * count)
+  const slopes = new Float64Array(count * 3)
+  for (let i = 1; i < STEPS; i += 1) {
+    const [delta, b] = direction(i)
+    evaluate(delta, b, cOverB * b, table.subarray((i - 1) * count, i * count), slopes)
+  }
+  if (ofScheme.size > 32) ofScheme.clear()
+  ofScheme.set(key, table)
+  return table
 }
