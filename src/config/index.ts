@@ -1,0 +1,7 @@
+export { findConfigFolder } from './files.ts'
+export { type ConfigLoaded, loadConfig } from './load.ts'
+export { isControl, ruleCovers, speciesOf, studyOf } from './lookups.ts'
+export { type Dimension, parseQuantity, type QuantityReading } from './quantity.ts'
+export { parseTime, type TimeReading } from './time.ts'
+export type * from './types.ts'
+export { fits } from './wildcard.ts'

@@ -1,0 +1,81 @@
+import { createHash } from 'node:crypto'
+import { resolve } from 'node:path'
+import type { Fault } from '../fault.ts'
+import { toInstrument, toMail, toSpecies, toStandard, toStudy, toWeb } from './build.ts'
+import { toRules } from './buildRules.ts'
+import { checkRules } from './checkRules.ts'
+import { checkStudies } from './checkStudies.ts'
+import { checkInstruments, checkRoom, checkSpecies, doubleNames } from './checks.ts'
+import { type ConfigFile, readFolder, sayPath } from './files.ts'
+import { byPlace } from './issues.ts'
+import { type Parts, parseFiles } from './parse.ts'
+import type { Config } from './types.ts'
+
+export type ConfigLoaded =
+  | { readonly kind: 'loaded'; readonly config: Config }
+  | { readonly kind: 'refused'; readonly faults: readonly [Fault, ...Fault[]] }
+
+/**
+ * Reads a configuration folder whole: either everything is right and frozen, or every fault is named at its place. The
+ * expressions of the rules are kept as text with their places; the room of rules judges them.
+ */
+export const loadConfig = (folder: string): ConfigLoaded => {
+  const root = resolve(folder)
+  const { files, faults: unread } = readFolder(root)
+  const parts = parseFiles(files)
+  const faults = [...unread, ...parts.faults, ...checkAll(parts, root)].sort(byPlace)
+  if (faults.length > 0 || parts.room === null) return { kind: 'refused', faults: faults as [Fault, ...Fault[]] }
+  return { kind: 'loaded', config: deepFreeze(build(parts, parts.room, files, root)) }
+}
+
+const checkAll = (parts: Parts, root: string): readonly Fault[] => [
+  ...(parts.room === null ? [] : checkRoom(parts.room)),
+  ...checkInstruments(parts, root),
+  ...checkSpecies(parts),
+  ...checkStudies(parts),
+  ...checkRules(parts),
+  ...doubleNames(parts.standards, 'standard'),
+  ...(parts.instruments.length > 0 || parts.clouded.instruments.length > 0 ? [] : [noInstrument(root)]),
+]
+
+const noInstrument = (root: string): Fault => ({
+  code: 'no-instrument',
+  place: { at: sayPath(resolve(root, 'instruments')) },
+  what: 'there is no instrument, so nothing would be watched',
+  remedy: 'write instruments/NAME.yaml',
+})
+
+const build = (
+  parts: Parts,
+  { value: room }: NonNullable<Parts['room']>,
+  files: readonly ConfigFile[],
+  root: string,
+): Config => {
+  const text = textOf(files)
+  return {
+    folder: root,
+    sha256: createHash('sha256').update(text).digest('hex'),
+    text,
+    room: room.room,
+    dataFolder: resolve(root, room.data),
+    timeZone: room.timezone,
+    keeper: room.keeper,
+    mail: toMail(room.mail, root),
+    web: toWeb(room.web, root),
+    instruments: parts.instruments.map(({ value }) => toInstrument(value, root)),
+    species: parts.species.map(({ value }) => toSpecies(value)),
+    studies: parts.studies.map(({ value }) => toStudy(value)),
+    rules: toRules(parts.rules, { at: sayPath(resolve(root, 'rules')) }),
+    standards: parts.standards.map(({ value }) => toStandard(value)),
+  }
+}
+
+/** All files in the order of their paths, each under a line that names it. Secrets are only referred to, so none is in it. */
+const textOf = (files: readonly ConfigFile[]): string =>
+  files.map(({ path, text }) => `# file: ${path}\n${text}${text.endsWith('\n') ? '' : '\n'}`).join('')
+
+const deepFreeze = <T>(value: T): T => {
+  if (typeof value !== 'object' || value === null || Object.isFrozen(value)) return value
+  for (const inner of Object.values(value)) deepFreeze(inner)
+  return Object.freeze(value)
+}
