@@ -32,6 +32,8 @@ export interface AlarmLife {
   /** Consecutive occasions on which the rule rang. */
   readonly consecutive: number
   readonly latch: boolean
+  /** A latching alarm that was active before or while it was silenced: it still waits for its reset. */
+  readonly latched?: boolean
 }
 
 /** What the world should hear of a step. */
