@@ -5,11 +5,11 @@
  *
  *   H = Σₖ pₖ Mₖ,   p = (Δ, [Ds, Dt | Dσ, Dτ,] B, C),
  *
- * with E_ik = Σ_σ a†_iσ a_kσ, T_m = Σ tr(DᵢDₖDₘ) E_ik and G_ik = E_ik + E_ki (see orbitals.ts)
+ * with E_ik = Σ_σ a†_iσ a_kσ, T_m = Σ tr(DᵢDₖDₘ) E_ik (see orbitals.ts) and the pair Q = Σᵢ a_i↓ a_i↑
  *
- *   M_B = 12 Σ_m T_m² − 7n,    M_C = ¼ Σ_ik G_ik² + (n² − 7n)/2,
+ *   M_B = 12 Σ_m T_m² − 7n,    M_C = Q†Q − S(S+1) + n/2 + n²/4
  *
- * where Racah's A n(n−1)/2, common to all levels, is left out. Labels therefore come from S and the irrep of the
+ * (the exchange part Σ E_ik E_ki is the Casimir operator of the orbital group, 7n − n²/2 − 2S(S+1)), where Racah's A n(n−1)/2, common to all levels, is left out. Labels therefore come from S and the irrep of the
  * block, never from a degeneracy. Everything is built once per n and group, in a few milliseconds.
  */
 import { addKronecker, type Dense, dense, orthonormalRange, product, sandwich, transposed } from './dense.ts'
@@ -37,18 +37,6 @@ const fieldsOf: Readonly<Record<Symmetry, readonly Matrix[]>> = {
   D3: [cubicField, ...trigonalFields],
 }
 
-/** The symmetric matrices gᵢₖ of G_ik for i ≤ k, with their weight in Σ_ik. */
-const pairOperators: readonly (readonly [Matrix, number])[] = [0, 1, 2, 3, 4].flatMap((i) =>
-  [0, 1, 2, 3, 4]
-    .filter((k) => k >= i)
-    .map((k): readonly [Matrix, number] => {
-      const g = Array.from({ length: 5 }, () => Array<number>(5).fill(0))
-      g[i]![k]! += 1
-      g[k]![i]! += 1
-      return [g, i === k ? 1 : 2]
-    }),
-)
-
 /** Operators among the determinants of `alpha` and `beta` electrons. */
 const operators = (symmetry: Symmetry, alpha: number, beta: number): readonly Dense[] => {
   const n = alpha + beta
@@ -71,10 +59,22 @@ const operators = (symmetry: Symmetry, alpha: number, beta: number): readonly De
   const racahB = dense(size, size)
   addKronecker(racahB, -7 * n, oneA, oneB)
   for (const t of repulsionTensors) addSquare(racahB, 12, t)
-  const racahC = dense(size, size)
-  addKronecker(racahC, (n * n - 7 * n) / 2, oneA, oneB)
-  for (const [g, weight] of pairOperators) addSquare(racahC, weight / 4, g)
-  return [...fields, racahB, racahC]
+  return [...fields, racahB, pairing(alpha, beta)]
+}
+
+/** M_C among the determinants of highest M_S. */
+const pairing = (alpha: number, beta: number): Dense => {
+  const n = alpha + beta
+  const spin = (alpha - beta) / 2
+  const size = stringsOf(alpha).length * stringsOf(beta).length
+  const out = dense(size, size)
+  if (beta > 0) {
+    const pair = dense(stringsOf(alpha - 1).length * stringsOf(beta - 1).length, size)
+    for (const i of [0, 1, 2, 3, 4]) addKronecker(pair, 1, annihilate(i, alpha), annihilate(i, beta))
+    out.data.set(product(transposed(pair), pair).data)
+  }
+  for (let i = 0; i < size; i += 1) out.data[i * size + i]! += n / 2 + (n * n) / 4 - spin * (spin + 1)
+  return out
 }
 
 /** Orthonormal basis of the states of highest M_S = S among the determinants. */
@@ -104,7 +104,9 @@ const build = (n: number, symmetry: Symmetry): readonly Block[] => {
     const beta = (n - unpaired) / 2
     const states = highestStates(alpha, beta)
     const hamiltonian = operators(symmetry, alpha, beta).map((operator) => sandwich(operator, states))
-    const turned = group.orbitals.map((r) => [rotateStrings(r, alpha), rotateStrings(r, beta)] as const)
+    const turned = group.orbitals.map(
+      (r) => [rotateStrings(r, stringsOf(alpha)), rotateStrings(r, stringsOf(beta))] as const,
+    )
     for (const irrep of group.irreps) {
       const projector = dense(states.rows, states.rows)
       turned.forEach(([a, b], g) => {

@@ -1,6 +1,7 @@
 /**
- * Electrons of one spin: a string is a set of occupied orbitals (bits of a number below 32), determinants are pairs of
- * an α and a β string. Operators on determinants are Kronecker products of operators on strings, at most 10 × 10.
+ * Sets of occupied orbitals, as bits of a number. Without spin–orbit coupling electrons of one spin fill five orbitals and
+ * a determinant is a pair of an α and a β string, so that operators are Kronecker products of matrices of at most
+ * 10 × 10. With it a determinant is one string over ten spin orbitals.
  */
 import type { Matrix } from './orbitals.ts'
 
@@ -10,25 +11,28 @@ const bits = (set: number): number => {
   return count
 }
 
-/** All strings with `count` electrons in five orbitals, ascending. */
-export const stringsOf = (count: number): readonly number[] =>
-  Array.from({ length: 32 }, (_, set) => set).filter((set) => bits(set) === count)
+/** All strings with `count` electrons in five (or `orbitals`) orbitals, ascending. */
+export const stringsOf = (count: number, orbitals = 5): readonly number[] =>
+  Array.from({ length: 1 << orbitals }, (_, set) => set).filter((set) => bits(set) === count)
 
-const occupied = (set: number): readonly number[] => [0, 1, 2, 3, 4].filter((i) => (set >> i) & 1)
+/** Orbitals of a string, ascending. */
+export const occupied = (set: number): readonly number[] =>
+  Array.from({ length: 10 }, (_, i) => i).filter((i) => (set >> i) & 1)
 
 /** Sign of moving past the electrons before orbital i. */
 const sign = (set: number, i: number): number => (bits(set & ((1 << i) - 1)) % 2 === 0 ? 1 : -1)
 
 const zeros = (rows: number, columns: number): number[][] => Array.from({ length: rows }, () => Array(columns).fill(0))
 
-/** Matrix of the one-electron operator `h` (5 × 5) among strings of `count` electrons: Σ hᵢⱼ aᵢ†aⱼ. */
+/** Matrix of the one-electron operator `h` (one row per orbital) among strings of `count` electrons: Σ hᵢⱼ aᵢ†aⱼ. */
 export const oneElectron = (h: Matrix, count: number): number[][] => {
-  const strings = stringsOf(count)
+  const strings = stringsOf(count, h.length)
   const out = zeros(strings.length, strings.length)
   strings.forEach((from, column) => {
     for (const j of occupied(from)) {
       const without = from & ~(1 << j)
-      for (let i = 0; i < 5; i += 1) {
+      for (let i = 0; i < h.length; i += 1) {
+        if (h[i]![j]! === 0) continue
         if ((without >> i) & 1) continue
         const row = strings.indexOf(without | (1 << i))
         out[row]![column]! += sign(from, j) * sign(without, i) * h[i]![j]!
@@ -39,9 +43,9 @@ export const oneElectron = (h: Matrix, count: number): number[][] => {
 }
 
 /** Takes an electron out of orbital i: from `count` to `count − 1` electrons. */
-export const annihilate = (i: number, count: number): number[][] => {
-  const from = stringsOf(count)
-  const to = stringsOf(count - 1)
+export const annihilate = (i: number, count: number, orbitals = 5): number[][] => {
+  const from = stringsOf(count, orbitals)
+  const to = stringsOf(count - 1, orbitals)
   const out = zeros(to.length, from.length)
   from.forEach((set, column) => {
     if ((set >> i) & 1) out[to.indexOf(set & ~(1 << i))]![column] = sign(set, i)
@@ -70,7 +74,7 @@ const determinant = (m: number[][]): number => {
 }
 
 /** How strings turn when every electron's orbitals turn by `r`: the minors of `r`. */
-export const rotateStrings = (r: Matrix, count: number): number[][] => {
-  const strings = stringsOf(count).map(occupied)
-  return strings.map((row) => strings.map((column) => determinant(row.map((i) => column.map((j) => r[i]![j]!)))))
+export const rotateStrings = (r: Matrix, strings: readonly number[]): number[][] => {
+  const sets = strings.map(occupied)
+  return sets.map((row) => sets.map((column) => determinant(row.map((i) => column.map((j) => r[i]![j]!)))))
 }
