@@ -11,7 +11,7 @@ import { larger } from './statistics.ts'
  * The larger of s and σ counts, never their sum.
  *
  * Φ⁻¹(F_t(T)) by D. L. Wallace, Ann. Math. Statist. 30 (1959) 1124: z = (8ν + 1)/(8ν + 3) · √(ν ln(1 + T²/ν)) with the
- * sign of T. It errs towards zero, by less than 0.04 at z = 3 for ν ≥ 3.
+ * sign of T. For ν ≥ 3 it is off by less than 0.04 up to z = 3, and above 1.5 towards zero.
  */
 export interface Estimates {
   /** Values taken in. */
