@@ -9,23 +9,28 @@ import { checkInstruments, checkRoom, checkSpecies, doubleNames } from './checks
 import { type ConfigFile, readFolder, sayPath } from './files.ts'
 import { byPlace } from './issues.ts'
 import { type Parts, parseFiles } from './parse.ts'
-import type { Config } from './types.ts'
+import type { Config, RuleDefinition } from './types.ts'
 
 export type ConfigLoaded =
   | { readonly kind: 'loaded'; readonly config: Config }
   | { readonly kind: 'refused'; readonly faults: readonly [Fault, ...Fault[]] }
 
+/** What the room of rules finds wrong in a rule's expressions. */
+export type JudgeRule = (rule: RuleDefinition) => readonly Fault[]
+
 /**
  * Reads a configuration folder whole: either everything is right and frozen, or every fault is named at its place. The
- * expressions of the rules are kept as text with their places; the room of rules judges them.
+ * expressions of the rules are kept as text with their places; with `judgeRule`, what is wrong in them is told together
+ * with everything else.
  */
-export const loadConfig = (folder: string): ConfigLoaded => {
+export const loadConfig = (folder: string, judgeRule: JudgeRule = () => []): ConfigLoaded => {
   const root = resolve(folder)
   const { files, faults: unread } = readFolder(root)
   const parts = parseFiles(files)
-  const faults = [...unread, ...parts.faults, ...checkAll(parts, root)].sort(byPlace)
+  const rules = toRules(parts.rules, { at: sayPath(resolve(root, 'rules')) })
+  const faults = [...unread, ...parts.faults, ...checkAll(parts, root), ...rules.flatMap(judgeRule)].sort(byPlace)
   if (faults.length > 0 || parts.room === null) return { kind: 'refused', faults: faults as [Fault, ...Fault[]] }
-  return { kind: 'loaded', config: deepFreeze(build(parts, parts.room, files, root)) }
+  return { kind: 'loaded', config: deepFreeze({ ...build(parts, parts.room, files, root), rules }) }
 }
 
 const checkAll = (parts: Parts, root: string): readonly Fault[] => [
@@ -50,7 +55,7 @@ const build = (
   { value: room }: NonNullable<Parts['room']>,
   files: readonly ConfigFile[],
   root: string,
-): Config => {
+): Omit<Config, 'rules'> => {
   const text = textOf(files)
   return {
     folder: root,
@@ -65,7 +70,6 @@ const build = (
     instruments: parts.instruments.map(({ value }) => toInstrument(value, root)),
     species: parts.species.map(({ value }) => toSpecies(value)),
     studies: parts.studies.map(({ value }) => toStudy(value)),
-    rules: toRules(parts.rules, { at: sayPath(resolve(root, 'rules')) }),
     standards: parts.standards.map(({ value }) => toStandard(value)),
   }
 }

@@ -1,10 +1,10 @@
 import type { z } from 'zod'
 import type { Fault } from '../fault.ts'
 import type { ConfigFile, Kind } from './files.ts'
-import { faultsOf } from './issues.ts'
+import { faultsOf, valueAt } from './issues.ts'
 import { type InstrumentFile, instrumentSchema } from './schemas/instrument.ts'
 import { type RoomFile, roomSchema } from './schemas/room.ts'
-import { type RuleFile, rulesSchema } from './schemas/rules.ts'
+import { type RuleFile, ruleSchema, rulesSchema } from './schemas/rules.ts'
 import { type SpeciesFile, speciesSchema } from './schemas/species.ts'
 import { type StandardFile, standardSchema } from './schemas/standard.ts'
 import { type StudyFile, studySchema } from './schemas/study.ts'
@@ -40,14 +40,21 @@ export interface Parts {
   readonly faults: readonly Fault[]
 }
 
-type Parsed =
-  | { readonly kind: 'parsed'; readonly file: Kind; readonly document: YamlDocument; readonly value: unknown }
-  | {
-      readonly kind: 'refused'
-      readonly file: Kind
-      readonly names: readonly string[]
-      readonly faults: readonly Fault[]
-    }
+interface Parsed {
+  readonly kind: 'parsed'
+  readonly file: Kind
+  readonly document: YamlDocument
+  readonly value: unknown
+}
+
+interface Refused {
+  readonly kind: 'refused'
+  readonly file: Kind
+  /** Null where the file is no YAML. */
+  readonly document: YamlDocument | null
+  readonly names: readonly string[]
+  readonly faults: readonly Fault[]
+}
 
 /** Reads every file against its schema, and goes on past the ones that have faults. */
 export const parseFiles = (files: readonly ConfigFile[]): Parts => {
@@ -62,9 +69,7 @@ export const parseFiles = (files: readonly ConfigFile[]): Parts => {
     instruments: parts('instruments'),
     species: parts('species'),
     studies: parts('studies'),
-    rules: parts<{ rules: readonly RuleFile[] }>('rules').flatMap(({ value, document }) =>
-      value.rules.map((rule, i) => ({ value: rule, document, path: ['rules', i] })),
-    ),
+    rules: all.flatMap((one) => (one.file === 'rules' ? rulesOf(one) : [])),
     standards: parts('standards'),
     clouded: {
       room: [],
@@ -78,18 +83,26 @@ export const parseFiles = (files: readonly ConfigFile[]): Parts => {
   }
 }
 
-const parseFile = (file: ConfigFile): Parsed => {
+/** Of a faulty file of rules, those that are right: what is wrong in their expressions is told at once too. */
+const rulesOf = ({ document }: Parsed | Refused): readonly Part<RuleFile>[] => {
+  const written = valueAt(document?.value, ['rules'])
+  return (Array.isArray(written) ? written : []).flatMap((one: unknown, i) => {
+    const outcome = ruleSchema.safeParse(one)
+    return outcome.success && document !== null ? [{ value: outcome.data, document, path: ['rules', i] }] : []
+  })
+}
+
+const parseFile = (file: ConfigFile): Parsed | Refused => {
   const { kind } = file
   const reading = readYaml(file.text, file.at)
-  // a file that is no YAML may claim any name: its own is the best guess
-  const stem = file.path.slice(file.path.lastIndexOf('/') + 1).replace(/\.yaml$/, '')
-  if (reading.kind === 'refused') return { kind: 'refused', file: kind, names: [stem, '*'], faults: reading.faults }
+  if (reading.kind === 'refused')
+    return { kind: 'refused', file: kind, document: null, names: ['*'], faults: reading.faults }
   const { document } = reading
   const schema: z.ZodType = SCHEMAS[kind]
   const outcome = schema.safeParse(document.value)
   if (outcome.success) return { kind: 'parsed', file: kind, document, value: outcome.data }
   const faults = faultsOf(outcome.error.issues, document, schema)
-  return { kind: 'refused', file: kind, names: namesIn(document.value, kind), faults }
+  return { kind: 'refused', file: kind, document, names: namesIn(document.value, kind), faults }
 }
 
 const NAME_KEYS: Readonly<Record<Kind, string>> = {

@@ -28,7 +28,8 @@ const chart = z
 
 const CONDITIONS = ['when', 'chart', 'overdue'] as const
 
-const rule = z
+/** One rule of a file. */
+export const ruleSchema = z
   .strictObject({
     rule: name(),
     title: text().optional().describe('What letters say has happened'),
@@ -73,6 +74,6 @@ const troubleOf = (value: Partial<Written>): { what: string; remedy: string; key
 }
 
 /** `rules/*.yaml` */
-export const rulesSchema = z.strictObject({ rules: z.array(rule).min(1) })
+export const rulesSchema = z.strictObject({ rules: z.array(ruleSchema).min(1) })
 
-export type RuleFile = z.output<typeof rule>
+export type RuleFile = z.output<typeof ruleSchema>
