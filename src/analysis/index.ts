@@ -2,4 +2,3 @@ export { type AnalysisOutcome, analyse, lockRecipe, unprepared } from './analyse
 export { type FileFacts, type Identity, identify, identifyAlone } from './identify.ts'
 export { analysisJson } from './json.ts'
 export { type Measured, quantitiesOf } from './quantities.ts'
-export { type Verdict, verdictOf } from './verdict.ts'

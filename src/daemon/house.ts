@@ -1,7 +1,8 @@
 import type { Logger } from 'pino'
+import type { Instrument } from '../config/types.ts'
 import { EXIT, FaultError, sayFault } from '../fault.ts'
 import { startIntake } from '../intake/index.ts'
-import type { Intake, IntakeEvent, IntakeOptions, IntakePorts } from '../intake/types.ts'
+import type { DropFolder, Intake, IntakeEvent, IntakeOptions, IntakePorts } from '../intake/types.ts'
 import { holdDataFolder, openStore, storeOn } from '../store/index.ts'
 import { singleFlight } from './flight.ts'
 import type { DaemonNote } from './health.ts'
@@ -114,7 +115,10 @@ export const openHouse = (configFolder: string, log: Logger) => {
     /** Takes files in by the configuration in force, in place of the intake that ran before. */
     takeIn: async (options: Partial<IntakeOptions>): Promise<Intake> => {
       await intake?.stop()
-      const started = startIntake(inForce.config.instruments, ports, { ...optionsFromEnvironment(), ...options })
+      const started = startIntake(inForce.config.instruments.map(dropFolderOf), ports, {
+        ...optionsFromEnvironment(),
+        ...options,
+      })
       intake = started
       return started
     },
@@ -175,6 +179,14 @@ const needsRestart = ({ config: fresh }: RoomInForce, { config: old }: RoomInFor
   fresh.dataFolder !== old.dataFolder || fresh.web?.host !== old.web?.host || fresh.web?.port !== old.web?.port
     ? 'the data folder or the listening address changed in the configuration: restart the daemon'
     : null
+
+/** `auto` leaves the choice between events and polling to intake. */
+const dropFolderOf = ({ name, dropFolder, files, watch }: Instrument): DropFolder => ({
+  name,
+  dropFolder,
+  files,
+  ...(watch === 'auto' ? {} : { watch }),
+})
 
 const tellLog = (log: Logger, event: IntakeEvent): void => {
   if ('fault' in event) log.warn({ instrument: event.instrument, kind: event.kind }, sayFault(event.fault))

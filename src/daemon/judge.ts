@@ -1,6 +1,7 @@
 import type { Identity } from '../analysis/index.ts'
 import type { Analysis } from '../analysis/types.ts'
 import { ENGINE } from '../analysis/types.ts'
+import { ruleCovers } from '../config/index.ts'
 import type { CompiledRule, Judgement, Outcome } from '../rules/types.ts'
 import type { Standing, Window } from '../series/types.ts'
 import type { StoredArrival } from '../store/arrivals.ts'
@@ -46,7 +47,7 @@ const concerns = ({ definition }: CompiledRule, { study }: Subject): boolean =>
   (definition.condition.kind === 'expression' ||
     definition.condition.kind === 'chart' ||
     (definition.condition.kind === 'always' && definition.condition.rule !== 'common-change')) &&
-  matchesStudy(definition.studies, study.name)
+  ruleCovers(definition, study.name)
 
 const windowOf = (kept: JustKept, rules: readonly CompiledRule[], stations: Stations): Window => {
   const { store } = stations

@@ -1,8 +1,8 @@
-import { quantitiesOf, verdictOf } from '../analysis/index.ts'
 import type { Analysis } from '../analysis/types.ts'
 import type { StoredArrival } from '../store/arrivals.ts'
-import { USUAL_PATH_MM } from './context.ts'
+import type { Subject } from './context.ts'
 import { judge } from './judge.ts'
+import { keepAnalysis } from './keepAnalysis.ts'
 import type { Analysed, ArrivalInHand, SpectrumInHand, Stations } from './pipeline.ts'
 
 /** A spectrum that was kept, for whoever watches. */
@@ -75,40 +75,32 @@ const keepSpectrum = (
   analysed: Analysed | null,
   stations: Stations,
 ): Kept => {
-  const { store, now, room } = stations
+  const { store } = stations
   const spectrum = store.spectra.add(arrival.id, arrival.instrument, raw, identity)
   const kept = { spectrum, arrival: arrival.id, sample: identity.sample }
   if (subject === null || analysed === null) return kept
-  const { study, species, sample, instrument } = subject
   const analysis = withFlags(analysed.analysis, identity)
-  const pathMm = raw.pathMm ?? study.pathMm ?? USUAL_PATH_MM
-  const quantities = quantitiesOf(analysis, pathMm)
-  const recipe =
-    analysed.recipe ??
-    (analysis.locked === null
-      ? null
-      : store.recipes.choose(sample, instrument.name, analysis.locked, {
-          locked: false,
-          spectra: [spectrum],
-          why: 'chosen on the first spectrum of the sample',
-          at: now(),
-        }))
-  store.analyses.add({
-    spectrum,
-    at: now(),
-    configSha256: room().config.sha256,
-    study: study.name,
-    species: species.name,
-    recipe,
-    analysis,
-    quantities,
-    temperatureC: raw.temperatureC ?? study.measuredAtC,
-    pathMm,
-    verdict: verdictOf(quantities, study.acceptance),
-  })
+  const recipe = analysed.recipe ?? chosenJustNow(spectrum, subject, analysis, stations)
+  keepAnalysis(spectrum, raw, subject, analysis, recipe, stations)
   judge({ spectrum, arrival, identity, subject, analysis, recipe }, stations)
   return kept
 }
+
+/** The first spectrum of a sample brings the recipe that was chosen on it. */
+const chosenJustNow = (
+  spectrum: number,
+  { sample, instrument }: Subject,
+  { locked }: Analysis,
+  { store, now }: Stations,
+): string | null =>
+  locked === null
+    ? null
+    : store.recipes.choose(sample, instrument.name, locked, {
+        locked: false,
+        spectra: [spectrum],
+        why: 'chosen on the first spectrum of the sample',
+        at: now(),
+      })
 
 const withFlags = (analysis: Analysis, { flags, remarks }: SpectrumInHand['identity']): Analysis => ({
   ...analysis,

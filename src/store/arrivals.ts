@@ -57,6 +57,9 @@ export const arrivals = (db: Db) => {
   )
   const pending = db.prepare<[number], ArrivalRow>(`${ARRIVAL} WHERE ${NO_OUTCOME} ORDER BY id LIMIT ?`)
   const pendingCount = db.prepare<[], { n: number }>(`SELECT count(*) AS n FROM arrival WHERE ${NO_OUTCOME}`)
+  const lastReceived = db.prepare<[string], { at: number | null }>(
+    `SELECT max(received_at) AS at FROM arrival WHERE instrument = ?`,
+  )
   const addOutcome = db.prepare(`INSERT INTO arrival_outcome (arrival, outcome, reason, at) VALUES (?, ?, ?, ?)`)
 
   const bytesOf = (sha256: string): Uint8Array => {
@@ -102,6 +105,9 @@ export const arrivals = (db: Db) => {
     /** Arrivals without an outcome, in order of arrival: what a crash or a backlog left to do. */
     pending: (limit: number): readonly StoredArrival[] => pending.all(limit).map(stored),
     pendingCount: (): number => pendingCount.get()!.n,
+
+    /** When the newest file of an instrument arrived; null when none has. */
+    lastReceivedAt: (instrument: string): number | null => lastReceived.get(instrument)?.at ?? null,
 
     bytesOf,
     addOutcome: (arrival: number, outcome: ArrivalOutcome, reason: string | null, at: number): void => {

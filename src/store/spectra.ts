@@ -1,6 +1,7 @@
 import { deflateRawSync, inflateRawSync } from 'node:zlib'
 import type { Identity } from '../analysis/identify.ts'
 import type { RawSpectrum } from '../readers/types.ts'
+import type { Flag } from '../spectrum/types.ts'
 import type { Db } from './open.ts'
 
 export interface StoredSpectrum {
@@ -9,6 +10,8 @@ export interface StoredSpectrum {
   readonly instrument: string
   readonly sample: string | null
   readonly measuredAt: number
+  /** Of its identity: `time-from-file-date`. */
+  readonly flags: readonly Flag[]
   readonly raw: RawSpectrum
 }
 
@@ -21,6 +24,7 @@ interface SpectrumRow {
   as_read: string
   x: Buffer
   y: Buffer
+  flags: string
 }
 
 const deflated = (values: Float64Array): Buffer =>
@@ -37,6 +41,7 @@ const fromRow = (row: SpectrumRow): StoredSpectrum => ({
   instrument: row.instrument,
   sample: row.sample,
   measuredAt: row.measured_at,
+  flags: JSON.parse(row.flags) as Flag[],
   raw: { ...(JSON.parse(row.as_read) as Omit<RawSpectrum, 'x' | 'y'>), x: inflated(row.x), y: inflated(row.y) },
 })
 
@@ -47,10 +52,14 @@ export const spectra = (db: Db) => {
      VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?)`,
   )
   const one = db.prepare<[number], SpectrumRow>(
-    `SELECT id, arrival, instrument, sample, measured_at, as_read, x, y FROM spectrum WHERE id = ?`,
+    `SELECT id, arrival, instrument, sample, measured_at, as_read, x, y, flags FROM spectrum WHERE id = ?`,
   )
   const first = db.prepare<[string], { at: number | null }>(
     `SELECT min(measured_at) AS at FROM spectrum WHERE sample = ?`,
+  )
+  const lastReceived = db.prepare<[], { sample: string; received_at: number }>(
+    `SELECT s.sample, max(r.received_at) AS received_at FROM spectrum s JOIN arrival r ON r.id = s.arrival
+      WHERE s.sample IS NOT NULL GROUP BY s.sample`,
   )
 
   return {
@@ -72,6 +81,10 @@ export const spectra = (db: Db) => {
 
     /** Time of the sample's first spectrum; null when there is none. */
     firstMeasuredAt: (sample: string): number | null => first.get(sample)?.at ?? null,
+
+    /** Every sample with the time its last spectrum arrived. */
+    lastReceived: (): readonly { readonly sample: string; readonly receivedAt: number }[] =>
+      lastReceived.all().map((row) => ({ sample: row.sample, receivedAt: row.received_at })),
 
     get: (id: number): StoredSpectrum | null => {
       const row = one.get(id)
