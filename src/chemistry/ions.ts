@@ -10,27 +10,31 @@ export interface KnownIon extends Ion {
   /** Other published free-ion B, cm⁻¹. */
   readonly otherFreeIonBPerCm: readonly number[]
   readonly cOverBSource: string
+  /** Jørgensen's g, cm⁻¹; null where not in the list. */
+  readonly gPerCm: number | null
+  /** Jørgensen's k; null where not in the list. */
+  readonly k: number | null
 }
 
 const JOLLY = 'Jolly, Modern Inorganic Chemistry'
 const MEMORY = 'from memory'
 const TS = 'value of the Tanabe-Sugano diagrams'
 
-/** Jørgensen's g (cm⁻¹), Δ = f g; times 1.1, the middle of f from water to amines, it is what to expect of a complex. */
-const G: Readonly<Record<string, number>> = {
-  'Mn2+': 8000,
-  'Ni2+': 8700,
-  'Co2+': 9000,
-  'V2+': 12000,
-  'Fe3+': 14000,
-  'Cr3+': 17400,
-  'Co3+': 18200,
-  'Ru2+': 20000,
-  'Mn4+': 24000,
-  'Mo3+': 24600,
-  'Rh3+': 27000,
-  'Ir3+': 32000,
-  'Pt4+': 36000,
+/** Jørgensen's g (cm⁻¹) and k of the central ion: Δ = f g, β = 1 − h k with f, h of the ligands (ligands.ts). */
+const JORGENSEN: Readonly<Record<string, readonly [g: number, k: number | null]>> = {
+  'Mn2+': [8000, 0.07],
+  'Ni2+': [8700, 0.12],
+  'Co2+': [9000, 0.09],
+  'V2+': [12000, 0.08],
+  'Fe3+': [14000, 0.24],
+  'Cr3+': [17400, 0.21],
+  'Co3+': [18200, 0.35],
+  'Ru2+': [20000, null],
+  'Mn4+': [24000, 0.5],
+  'Mo3+': [24600, 0.15],
+  'Rh3+': [27000, 0.3],
+  'Ir3+': [32000, 0.3], // one copy of the list has 8.0 for g/10³, a misprint
+  'Pt4+': [36000, 0.5],
 }
 
 /** Δ of the hexaaqua ion or alum where g is not in the list; from memory. */
@@ -91,7 +95,10 @@ export const IONS: readonly KnownIon[] = ROWS.map(
     uCOverB: 0.3,
     cOverBSource,
     usualSpin: usualSpin ?? null,
-    typicalDeltaPerCm: G[symbol] === undefined ? (AQUA[symbol] ?? null) : 1.1 * G[symbol],
+    // 1.1 g: the middle of f from water to amines
+    typicalDeltaPerCm: JORGENSEN[symbol] === undefined ? (AQUA[symbol] ?? null) : 1.1 * JORGENSEN[symbol][0],
+    gPerCm: JORGENSEN[symbol]?.[0] ?? null,
+    k: JORGENSEN[symbol]?.[1] ?? null,
   }),
 )
 

@@ -1,4 +1,5 @@
 export { assignBands } from './assign.ts'
+export { type Crossover, crossovers } from './crossover.ts'
 export type { Field } from './field.ts'
 export { faultsOfField } from './field.ts'
 export { levels } from './levels.ts'
