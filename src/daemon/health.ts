@@ -85,9 +85,13 @@ export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
         .filter(({ received_at }) => received_at >= recent)
         .map(({ instrument, file }) => `a file was set aside: ${instrument} ${file}`),
       ...(letters.waiting > 0 && letters.last_error !== null
-        ? [`${letters.waiting} letters wait since ${letters.oldest_waiting}: ${letters.last_error}`]
+        ? [
+            `${count(letters.waiting, 'letter waits', 'letters wait')} since ${letters.oldest_waiting}: ${letters.last_error}`,
+          ]
         : []),
-      ...(letters.failed > 0 ? [`${letters.failed} letters were given up: ${letters.last_error}`] : []),
+      ...(letters.failed > 0
+        ? [`${count(letters.failed, 'letter was', 'letters were')} given up: ${letters.last_error}`]
+        : []),
     ],
     daemon,
     spectra: counts.spectra,
@@ -100,6 +104,8 @@ export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
     unknown_samples: unknownSamples(db),
   }
 }
+
+const count = (n: number, one: string, many: string): string => `${n} ${n === 1 ? one : many}`
 
 const noteOf = (db: Db): { body: DaemonNote; at: number | null } => {
   const row = db

@@ -16,7 +16,8 @@ export const runDaemon = async (configFolder: string): Promise<void> => {
   const stops: Stop[] = []
   const asked = signalled()
   try {
-    await house.takeIn({})
+    // the first scan tells what waits and which folders are there, before the daemon says that it is up
+    await (await house.takeIn({})).scanNow()
     const reload = async (why: string): Promise<void> => {
       if (house.reload(why)) await house.takeIn({})
     }

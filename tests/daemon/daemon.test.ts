@@ -62,7 +62,7 @@ describe('the daemon', () => {
     const status = await room.run(['status', '--json'])
     expect(status.code).toBe(1)
     expect(JSON.parse(status.stdout).reasons.join()).toMatch(/no daemon/)
-  }, 90_000)
+  })
 
   it('keeps a file once, whatever it is called and however often it is touched', async () => {
     const room = testRoom()
@@ -93,20 +93,13 @@ describe('the daemon', () => {
     expect(waiting).toMatchObject({ state: 'waiting', attempts: 1 })
     expect(waiting!.last_error).not.toBe('')
     const status = await room.run(['status'])
-    expect(status.stdout).toMatch(/letters wait/)
+    expect(status.stdout).toMatch(/1 letters? waits? since/)
     const back = await mailReceiver(first.port)
-    await until(
-      'the wait is over',
-      () =>
-        room.rows<{ due: number }>(
-          `SELECT next_attempt_at <= strftime('%Y-%m-%dT%H:%M:%SZ', 'now') AS due FROM letters`,
-        )[0]?.due === 1,
-      90_000,
-    )
+    room.hurry() // the first pause is a minute
     await room.run(['run', '--once'])
     expect(back.letters).toHaveLength(1)
     expect(back.letters[0]).toContain(waiting!.message_id)
-  }, 120_000)
+  })
 
   it('leaves with 75 when another daemon holds the data folder, and says which', async () => {
     const room = testRoom()

@@ -92,6 +92,8 @@ export interface TestRoom {
   write(name: string, text: string): void
   /** Rows of a query on the database; none while it does not exist. */
   rows<T = Record<string, unknown>>(sql: string): T[]
+  /** Makes every letter that waits due now. */
+  hurry(): void
   run(args: readonly string[], env?: Record<string, string>): Promise<Ended>
   start(): Promise<ChildProcess>
 }
@@ -145,9 +147,14 @@ export const testRoom = (smtpPort = 9): TestRoom => {
           db.close()
         }
       } catch (error) {
-        if (/unable to open|no such table/.test((error as Error).message)) return []
+        if (/unable to open|directory does not exist|no such table/.test((error as Error).message)) return []
         throw error
       }
+    },
+    hurry: () => {
+      const db = new Database(join(data, 'tendq.db'))
+      db.exec(`UPDATE letter_recipient SET next_attempt_at = 0 WHERE state = 'waiting'`)
+      db.close()
     },
     run: (args, env) => ended(spawned(args, env)),
     start: async () => {
