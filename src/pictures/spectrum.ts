@@ -19,7 +19,7 @@ export interface SpectrumDrawing {
 }
 
 const WIDTH = 760
-const HEIGHT = 560
+const HEIGHT = 590
 const LEFT = 72
 const RIGHT = WIDTH - 24
 const TOP = 84
@@ -39,7 +39,7 @@ export const spectrumPicture = (picture: SpectrumDrawing): string => {
   const fitted = fit.kind === 'fitted' ? fit : null
   const body = [
     text(LEFT, 28, title, { 'font-size': 17 }),
-    text(LEFT, 48, subtitleOf(spectrum, fit), { 'font-size': SMALL_PX, fill: SOFT_INK }),
+    text(LEFT, 44, subtitleOf(spectrum, fit), { 'font-size': SMALL_PX, fill: SOFT_INK }),
     wavelengthAxis(across, spectrum),
     wavenumberAxis(across, fitted === null ? BOTTOM : REST_BOTTOM),
     valueAxis(up, spectrum.ordinate === 'absorbance' ? 'absorbance' : 'Kubelka–Munk function'),
@@ -86,23 +86,24 @@ const wavenumberAxis = (across: Scale, bottom: number): string =>
     .join('') +
   text(RIGHT, bottom + 38, 'vacuum wavenumber / cm⁻¹', { 'text-anchor': 'end' })
 
-/** Round wavelengths, as far apart as their labels need. */
+/** Room that the label of a wavelength needs, px. */
+const LABEL_PX = 36
+/** Labelled first are the roundest wavelengths, then others between them where there is room. nm */
+const ROUNDNESS = [100, 50, 20, 10] as const
+
 const wavelengthAxis = (across: Scale, { medium }: Spectrum): string => {
-  const [longest, shortest] = [nmOfWavenumber(across.from, medium), nmOfWavenumber(across.to, medium)]
-  let free = Number.NEGATIVE_INFINITY
-  const marks = ticks(longest, shortest, 16)
-    .toReversed()
-    .flatMap((nm) => {
+  const [shortest, longest] = [nmOfWavenumber(across.to, medium), nmOfWavenumber(across.from, medium)]
+  const labelled = new Map<number, number>()
+  for (const step of ROUNDNESS)
+    for (let nm = Math.ceil(shortest / step) * step; nm <= longest; nm += step) {
       const at = across.place(wavenumberOfNm(nm, medium))
-      if (at < free || at > RIGHT) return []
-      free = at + 34
-      return [tick(at, TOP, -5, say(nm))]
-    })
+      if ([...labelled.values()].every((other) => Math.abs(other - at) >= LABEL_PX)) labelled.set(nm, at)
+    }
   const name = `wavelength ${medium === 'air' ? 'in air' : 'in vacuum'} / nm`
   return (
     line(LEFT, TOP, RIGHT, TOP, { stroke: INK, 'stroke-width': 0.8 }) +
-    marks.join('') +
-    text(RIGHT, 48, name, { 'text-anchor': 'end', 'font-size': SMALL_PX })
+    [...labelled].map(([nm, at]) => tick(at, TOP, -5, say(nm))).join('') +
+    text(RIGHT, 58, name, { 'text-anchor': 'end', 'font-size': SMALL_PX })
   )
 }
 
@@ -202,17 +203,13 @@ const restOf = (fit: Fitted, spectrum: Spectrum, across: Scale): string => {
   )
 }
 
-const keyOf = (hasFit: boolean, bottom: number): string => {
-  const said = hasFit
-    ? 'broad line: measured; thin line: fitted; dashed: components on the background; dotted: background; crosses: not used'
-    : 'broad line: measured; crosses: not used'
-  return (
-    text(LEFT, bottom + 38, hasFit ? said.slice(0, said.indexOf('; dotted')) : said, {
-      'font-size': SMALL_PX,
-      fill: SOFT_INK,
-    }) +
-    (hasFit
-      ? text(LEFT, bottom + 52, said.slice(said.indexOf('dotted')), { 'font-size': SMALL_PX, fill: SOFT_INK })
-      : '')
-  )
-}
+const KEY = [
+  'broad line: measured; thin line: fitted; dashed: components on the background;',
+  'dotted: background; crosses: not used',
+] as const
+const KEY_WITHOUT_FIT = ['broad line: measured; crosses: not used'] as const
+
+const keyOf = (hasFit: boolean, bottom: number): string =>
+  (hasFit ? KEY : KEY_WITHOUT_FIT)
+    .map((said, i) => text(LEFT, bottom + 57 + 15 * i, said, { 'font-size': SMALL_PX, fill: SOFT_INK }))
+    .join('')

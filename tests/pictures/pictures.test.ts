@@ -47,6 +47,33 @@ const isWellFormed = (svg: string): boolean => {
   return open.length === 0 && !/[<>]|&(?!(amp|lt|gt|quot|#39);)/.test(rest)
 }
 
+/** Boxes of the upright texts, at 0.58 em a character. */
+const textBoxes = (svg: string) =>
+  [...svg.matchAll(/<text ([^>]*)>([^<]*)<\/text>/g)].flatMap(([, attributes, content]) => {
+    const of = (name: string) => new RegExp(` ?${name}="([^"]*)"`).exec(attributes!)?.[1]
+    if (of('transform') !== undefined) return []
+    const size = Number(of('font-size') ?? 13)
+    const width = content!.length * size * 0.58
+    const anchor = of('text-anchor')
+    const left = Number(of('x')) - (anchor === 'end' ? width : anchor === 'middle' ? width / 2 : 0)
+    const base = Number(of('y'))
+    return [{ content, left, right: left + width, top: base - 0.8 * size, bottom: base + 0.25 * size }]
+  })
+
+/** Texts that lie on each other or leave the paper. */
+const clashes = (svg: string): readonly string[] => {
+  const [, width, height] = /viewBox="0 0 (\d+) (\d+)"/.exec(svg)!.map(Number) as [number, number, number]
+  const boxes = textBoxes(svg)
+  const outside = boxes.filter((box) => box.left < 0 || box.right > width || box.top < 0 || box.bottom > height)
+  const pairs = boxes.flatMap((a, i) =>
+    boxes
+      .slice(i + 1)
+      .filter((b) => a.left < b.right && b.left < a.right && a.top < b.bottom && b.top < a.bottom)
+      .map((b) => `${a.content} on ${b.content}`),
+  )
+  return [...outside.map(({ content }) => `${content} is outside`), ...pairs]
+}
+
 describe('a drawing of a spectrum', () => {
   const svg = spectrumPicture({ spectrum, fit, title: 'AGE-CL-1', roles: ['nu1', 'nu2'] })
 
@@ -64,6 +91,12 @@ describe('a drawing of a spectrum', () => {
     // measured, fitted, two components, background, residuals
     expect(svg.match(/<path /g)!.length).toBeGreaterThanOrEqual(6)
     expect(svg).not.toMatch(/NaN|Infinity|undefined/)
+  })
+
+  test('has no text that lies on another or leaves the paper', () => {
+    expect(clashes(svg)).toEqual([])
+    const unfitted = { kind: 'unfitted', why: 'too few points', points: 3, windowPerCm: null, flags: [] } as const
+    expect(clashes(spectrumPicture({ spectrum, fit: unfitted, title: 'X' }))).toEqual([])
   })
 
   test('is the same from run to run', () => {
@@ -109,6 +142,7 @@ describe('a drawing of a trend', () => {
     expect(svg).toContain('reference')
     expect(svg).toContain('days since 2026-03-02 09:00 UTC')
     expect(svg).toContain('a rule rang on 3 of them')
+    expect(clashes(svg)).toEqual([])
     expect(svg).not.toMatch(/NaN|Infinity|undefined/)
   })
 
