@@ -47,8 +47,8 @@ const specialKind = (stats: Stats): string => {
 const throughLink = async (place: Place, file: string): Promise<Sighting | 'folder'> => {
   try {
     const path = await realpath(join(place.root, file))
-    if (!path.startsWith(place.root.endsWith(sep) ? place.root : place.root + sep))
-      return { kind: 'refused', file, fault: linkLeavesFolder(place.dropFolder, file, path) }
+    const isBelow = path === place.root || path.startsWith(place.root.endsWith(sep) ? place.root : place.root + sep)
+    if (!isBelow) return { kind: 'refused', file, fault: linkLeavesFolder(place.dropFolder, file, path) }
     const stats = await stat(path)
     // A folder is entered under its own name only: links to folders can run in circles.
     if (stats.isDirectory()) return 'folder'
