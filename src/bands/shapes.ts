@@ -2,9 +2,9 @@
  * The functions of a recipe and the nonlinear parameters the search runs over, two a component.
  *
  * band  φ(x) = exp(−4 ln2 u²), u = (x − p)/w; parameters p (centre) and w (full width at half maximum), cm⁻¹
- * flank φ(x) = exp(b t − c t²), t = x − xₑ with xₑ the upper end of the window: a Gaussian of width w = √(4 ln2/c) about
- *       p = xₑ + b/(2c). Of a tail the data tell value and slope at xₑ well, the centre hardly at all;
- *       in (b, c) the ridge is straight, in (p, w) it is a parabola that a search crawls along.
+ * flank φ(x) = exp(b (t − e t²/2)), t = x − xₑ with xₑ the upper end of the window: a Gaussian about p = xₑ + 1/e of
+ *       width w = √(8 ln2 / (b e)), normalised at xₑ; b is the logarithmic slope there. Of a tail the data tell value and
+ *       slope at xₑ well, the centre hardly at all: in (b, e) the ridge is straight, in (p, w) a search crawls along a parabola.
  */
 
 import type { Box } from './levenbergMarquardt.ts'
@@ -15,7 +15,7 @@ export const FOUR_LN2 = 4 * Math.LN2
 /** Beyond this many widths a Gaussian is below 10⁻¹⁴ and left out. */
 const REACH = 3.4
 
-/** Start and box of the search. A flank's slope b reaches from flat to that of its narrowest, farthest Gaussian. */
+/** Start and box of the search. A flank's centre must lie beyond the window; its widths bound the slope b. */
 export const searchSpace = (recipe: Recipe): { readonly start: Float64Array; readonly box: Box } => {
   const edge = recipe.windowPerCm[1]
   const rows = recipe.components.flatMap((component) => parameterRows(component, edge))
@@ -34,11 +34,10 @@ const parameterRows = (component: RecipeComponent, edge: number): readonly [Row,
       [p, pb[0], pb[1]],
       [w, wb[0], wb[1]],
     ]
-  const curvature = (width: number) => FOUR_LN2 / width ** 2
-  const slope = (position: number, width: number) => 2 * curvature(width) * Math.max(0, position - edge)
+  const slope = (position: number, width: number) => (2 * FOUR_LN2 * (position - edge)) / width ** 2
   return [
     [slope(p, w), slope(pb[0], wb[1]), slope(pb[1], wb[0])],
-    [curvature(w), curvature(wb[1]), curvature(wb[0])],
+    [1 / (p - edge), 1 / (pb[1] - edge), 1 / (pb[0] - edge)],
   ]
 }
 
@@ -58,10 +57,11 @@ export const fillColumns = (
   if (kind === 'flank') {
     for (let i = 0; i < n; i++) {
       const t = x[i]! - edge
-      const f = Math.exp(t * (first - second * t)) * weight[i]!
+      const bent = t * (1 - (second * t) / 2)
+      const f = Math.exp(first * bent) * weight[i]!
       value[i] = f
-      byFirst[i] = t * f
-      bySecond[i] = -t * t * f
+      byFirst[i] = bent * f
+      bySecond[i] = (-first * t * t * f) / 2
     }
     return
   }
@@ -92,3 +92,13 @@ export const backgroundAt = (exponent: number, origin: number, x: number): numbe
 
 export const backgroundExponents = (recipe: Recipe): readonly number[] =>
   recipe.background.map((term) => (term.kind === 'constant' ? 0 : term.exponent))
+
+/** Centre, full width at half maximum, and height at the centre over the coefficient, of a component with these search parameters. */
+export const componentAt = (kind: RecipeComponent['kind'], first: number, second: number, edge: number) =>
+  kind === 'band'
+    ? { positionPerCm: first, widthPerCm: second, heightRatio: 1 }
+    : {
+        positionPerCm: edge + 1 / second,
+        widthPerCm: Math.sqrt((2 * FOUR_LN2) / (first * second)),
+        heightRatio: Math.exp(first / (2 * second)),
+      }

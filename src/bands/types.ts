@@ -12,6 +12,11 @@ export interface Recipe {
   readonly background: readonly BackgroundTerm[]
   /** Vacuum wavenumbers, cm⁻¹. */
   readonly windowPerCm: readonly [number, number]
+  /**
+   * How far the recipe is off on its reference spectra beyond their noise, as a share of the spread of the
+   * absorbance (see points.ts). Weighs the fit: σ² = noise² + (misfit · spread)². Absent: 0.
+   */
+  readonly misfit?: number
 }
 
 export interface RecipeComponent {

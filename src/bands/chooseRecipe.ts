@@ -1,0 +1,246 @@
+/**
+ * The recipe of a sample, from its reference spectra together.
+ *
+ * Candidates: the k strongest places where bands may be (k = 1, 2, …), each with the backgrounds and with or without a
+ * charge-transfer flank. A band that only the residuals ask for may enter where the recipe then reaches the noise; else it is
+ * one more admissible way to describe the spectra, and tells how far the positions depend on it. Score, summed over the spectra (Schwarz 1978):
+ *   BIC = n′ ln(χ²/n) + p ln n′,  n′ = n/τ
+ * with τ the correlation time of the residuals of the best candidate. Real bands are no Gaussians: against raw noise one
+ * more band always pays, because residuals of structure look like n independent witnesses. They are not, n′ counts them.
+ * On noise alone τ = 1 and the score is the usual one. Points are joined to some 240, which loses nothing of a broad band.
+ */
+import type { Spectrum } from '../spectrum/types.ts'
+import { BACKGROUNDS, makeRecipe } from './candidates.ts'
+import { findMisfit } from './misfit.ts'
+import { disorder, joinNeighbours, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
+import { apart, findSeeds, NARROWEST_PER_CM, type Seed, WIDEST_PER_CM } from './seeds.ts'
+import { componentAt } from './shapes.ts'
+import { type Solution, solveRecipe } from './solveRecipe.ts'
+import type { BackgroundTerm, BandHint, ChooseRecipe, Recipe, RecipeChoice } from './types.ts'
+import { correlationTime, type Uncertainty, uncertaintyOf } from './uncertainty.ts'
+
+const JOINED = 240
+const MOST_SEEDS = 5
+/** A band below this share of the highest is structure, not a d–d band. */
+const LOWEST = 0.03
+/** Height and width of a band over the uncertainties of height and position, correlation counted: less, and it is a way to bend the curve. */
+const DETERMINED = 4
+/** Recipes whose score is within this of the best describe the spectra acceptably. */
+const ADMISSIBLE = 10
+const MOST_ADMISSIBLE = 6
+const NARROWEST_WINDOW_PER_CM = 3000
+
+interface Trial {
+  readonly recipe: Recipe
+  readonly solutions: readonly Solution[]
+  readonly chi2: number
+}
+
+interface Scored extends Trial {
+  readonly score: number
+}
+
+const none = (spectra: readonly Spectrum[], why: string): RecipeChoice => ({
+  kind: 'none',
+  why,
+  flags: [...new Set(spectra.flatMap((spectrum) => spectrum.flags))],
+})
+
+/** Deterministic: the same spectra in the same order give the same recipe. */
+export const chooseRecipe: ChooseRecipe = (spectra, options) => {
+  if (spectra.length === 0) return none(spectra, 'No spectrum was given.')
+  for (const spectrum of spectra) {
+    const fault = disorder(spectrum)
+    if (fault !== null) return none(spectra, `A spectrum can't be fitted: ${fault}.`)
+  }
+  const windows = spectra.map(usedWindow)
+  if (windows.some((window) => window === null)) return none(spectra, 'A spectrum has no point that can be used.')
+  const windowPerCm: readonly [number, number] = [
+    Math.max(...windows.map((window) => window![0])),
+    Math.min(...windows.map((window) => window![1])),
+  ]
+  if (windowPerCm[1] - windowPerCm[0] < NARROWEST_WINDOW_PER_CM)
+    return none(spectra, `The spectra share less than ${NARROWEST_WINDOW_PER_CM} cm⁻¹, less than a d–d band takes.`)
+  const full = spectra.map((spectrum) => selectPoints(spectrum, windowPerCm, 0))
+  if (full.some(({ x }) => x.length < 20)) return none(spectra, 'A spectrum has fewer than 20 points that can be used.')
+  if (full.some(({ spread }) => !(spread > 0))) return none(spectra, 'A spectrum is a flat line.')
+  return choose(spectra, full, windowPerCm, options.hints ?? [], options.bands)
+}
+
+const choose = (
+  spectra: readonly Spectrum[],
+  full: readonly Selection[],
+  windowPerCm: readonly [number, number],
+  hints: readonly BandHint[],
+  bands: number | undefined,
+): RecipeChoice => {
+  const joined = full.map((points) => joinNeighbours(points, 0, JOINED))
+  const seeds = placesOf(joined, hints)
+  const richest = makeRecipe(seeds.slice(0, bands ?? MOST_SEEDS), true, BACKGROUNDS[1]!, windowPerCm)
+  const misfit = findMisfit(richest, joined)
+  const points = joined.map((selection) => reweigh(selection, misfit))
+  const attempt: Attempt = (places, flank, background) =>
+    tryRecipe(makeRecipe(places, flank, background, windowPerCm), points)
+  const empty = BACKGROUNDS.flatMap((background) => [false, true].map((flank) => attempt([], flank, background)))
+  const counts = bands === undefined ? seeds.slice(0, MOST_SEEDS).map((_, k) => k + 1) : [Math.min(bands, seeds.length)]
+  const seeded = counts
+    .filter((k) => k >= Math.min(hints.length, bands ?? hints.length))
+    .flatMap((k) => everyBackground(seeds.slice(0, k), attempt))
+  const seen = [...empty, ...seeded].filter((trial) => trial !== null)
+  const suggested = suggestions(seen, points, bands, attempt)
+  const scored = score([...seen, ...suggested], points)
+  const mayBeChosen = ({ recipe }: Scored) =>
+    bands === undefined
+      ? !suggested.some((trial) => trial.recipe === recipe) || findMisfit(recipe, joined) === 0
+      : bandCount(recipe) === bands
+  const best = scored.toSorted((a, b) => a.score - b.score).find(mayBeChosen)
+  if (!best) return none(spectra, `No recipe of ${bands ?? 'any number of'} bands describes the spectra.`)
+  if (bandCount(best.recipe) === 0)
+    return { kind: 'none', why: 'No band stands above noise and background.', flags: ['no-band'] }
+  const others = scored
+    .filter(
+      (other) => other !== best && bandCount(other.recipe) > 0 && bandCount(other.recipe) >= bandCount(best.recipe),
+    )
+    .sort((a, b) => a.score - b.score)
+  const close = others.filter((other) => other.score < best.score + ADMISSIBLE).slice(0, MOST_ADMISSIBLE)
+  const recipe = settle(best, full)
+  return { kind: 'chosen', recipe, admissible: [recipe, ...close.map((other) => settle(other, joined))] }
+}
+
+type Place = Pick<Seed, 'positionPerCm' | 'widthPerCm'>
+type Attempt = (places: readonly Place[], flank: boolean, background: readonly BackgroundTerm[]) => Trial | null
+
+/** Recipes with a band more than the best so far, where its residuals ask for one; again until there are `bands`. */
+const suggestions = (
+  seen: readonly Trial[],
+  points: readonly Selection[],
+  bands: number | undefined,
+  attempt: Attempt,
+): readonly Trial[] => {
+  let found: readonly Trial[] = []
+  for (let round = 0; round < (bands ?? 1); round++) {
+    const best = bestOf(score([...seen, ...found], points))
+    const place = best && bandCount(best.recipe) > 0 ? missingBand(best, points) : null
+    if (!best || !place || bandCount(best.recipe) > (bands ?? Infinity)) break
+    found = [...found, ...everyBackground([...bandPlaces(best), place], attempt).filter((trial) => trial !== null)]
+  }
+  return found
+}
+
+const bandCount = ({ components }: Recipe): number => components.filter(({ kind }) => kind === 'band').length
+
+/** Hinted places first, then what the curves show, strongest first. */
+const placesOf = (points: readonly Selection[], hints: readonly BandHint[]): readonly Seed[] => {
+  const seen = apart(points.flatMap((selection) => findSeeds(selection)).sort((a, b) => b.height - a.height))
+  const hinted = hints.map(({ positionPerCm, withinPerCm }) => {
+    const near = seen.filter(
+      (seed) => Math.abs(seed.positionPerCm - positionPerCm) <= Math.max(withinPerCm, NARROWEST_PER_CM),
+    )
+    return near[0] ?? { positionPerCm, widthPerCm: 3500, height: 0 }
+  })
+  return apart([...hinted, ...seen])
+}
+
+const everyBackground = (places: readonly Place[], attempt: Attempt): readonly (Trial | null)[] =>
+  BACKGROUNDS.flatMap((background) => [false, true].map((flank) => attempt(places, flank, background)))
+
+/** Null where, in most of the spectra, a component comes out without height, as structure, beyond the data or undetermined. */
+const tryRecipe = (recipe: Recipe, points: readonly Selection[]): Trial | null => {
+  const solutions: Solution[] = []
+  for (const selection of points) {
+    const solution = solveRecipe(recipe, selection)
+    if (!solution) return null
+    solutions.push(solution)
+  }
+  const uncertainties = solutions.map((solution) => uncertaintyOf(recipe, solution))
+  const sensible = recipe.components.every((component, k) => {
+    const times = solutions.filter((solution, s) => isSensible(recipe, solution, uncertainties[s]!, component.kind, k))
+    return 2 * times.length >= solutions.length
+  })
+  const used = recipe.background.every((_, k) =>
+    solutions.some(({ at }) => at.coefficients[recipe.components.length + k]! !== 0),
+  )
+  return sensible && used ? { recipe, solutions, chi2: solutions.reduce((sum, { chi2 }) => sum + chi2, 0) } : null
+}
+
+const isSensible = (
+  recipe: Recipe,
+  { at, parameters }: Solution,
+  uncertainty: Uncertainty | null,
+  kind: 'band' | 'flank',
+  k: number,
+): boolean => {
+  const height = at.coefficients[k]!
+  if (kind === 'flank') return height > 0
+  const heights = recipe.components.map((component, i) => (component.kind === 'band' ? at.coefficients[i]! : 0))
+  const position = parameters[2 * k]!
+  const width = parameters[2 * k + 1]!
+  const [from, to] = recipe.windowPerCm
+  const inside = position > from - width / 4 && position < to + width / 4
+  const heightVariance = uncertainty?.ofCoefficient(k) ?? Infinity
+  const positionVariance = uncertainty?.ofParameter(2 * k, 2 * k) ?? Infinity
+  const determined = height > DETERMINED * Math.sqrt(heightVariance) && width > DETERMINED * Math.sqrt(positionVariance)
+  const shaped = width > NARROWEST_PER_CM && width < WIDEST_PER_CM
+  return inside && shaped && determined && height > LOWEST * Math.max(...heights)
+}
+
+const score = (trials: readonly Trial[], points: readonly Selection[]): readonly Scored[] => {
+  const closest = trials.reduce<Trial | null>((best, trial) => (best && best.chi2 <= trial.chi2 ? best : trial), null)
+  if (!closest) return []
+  const effective = points.map(({ x }, s) => x.length / correlationTime(closest.solutions[s]!.at.residuals))
+  return trials.map((trial) => {
+    const parameters = 3 * trial.recipe.components.length + trial.recipe.background.length
+    const total = trial.solutions.reduce(
+      (sum, { chi2 }, s) =>
+        sum + effective[s]! * Math.log(chi2 / points[s]!.x.length) + parameters * Math.log(effective[s]!),
+      0,
+    )
+    return { ...trial, score: total }
+  })
+}
+
+const bestOf = (scored: readonly Scored[]): Scored | null =>
+  scored.reduce<Scored | null>((best, trial) => (best && best.score <= trial.score ? best : trial), null)
+
+const mean = (values: readonly number[]): number => values.reduce((sum, v) => sum + v, 0) / values.length
+
+const placeOf = ({ recipe, solutions }: Trial, k: number): Place => {
+  const shapes = solutions.map(({ parameters }) =>
+    componentAt(recipe.components[k]!.kind, parameters[2 * k]!, parameters[2 * k + 1]!, recipe.windowPerCm[1]),
+  )
+  return {
+    positionPerCm: mean(shapes.map((shape) => shape.positionPerCm)),
+    widthPerCm: mean(shapes.map((shape) => shape.widthPerCm)),
+  }
+}
+
+const bandPlaces = (trial: Trial): readonly Place[] =>
+  trial.recipe.components.flatMap(({ kind }, k) => (kind === 'band' ? [placeOf(trial, k)] : []))
+
+/** Where the residuals of all spectra, smoothed over a narrow band, rise highest above the curve. */
+const missingBand = (trial: Trial, points: readonly Selection[]): Place | null => {
+  const residual = points.map((selection, s) => ({
+    ...selection,
+    y: trial.solutions[s]!.at.residuals.map((r, i) => r / selection.weight[i]!),
+  }))
+  const places = bandPlaces(trial)
+  const free = residual
+    .flatMap((selection) => findSeeds(selection))
+    .filter((seed) =>
+      places.every(({ positionPerCm }) => Math.abs(positionPerCm - seed.positionPerCm) > NARROWEST_PER_CM / 2),
+    )
+  return free.length > 0 ? free.reduce((best, seed) => (seed.height > best.height ? seed : best)) : null
+}
+
+/** The recipe with its places as found, and the misfit it has. */
+const settle = (trial: Trial, points: readonly Selection[]): Recipe => {
+  const flank = trial.recipe.components.findIndex(({ kind }) => kind === 'flank')
+  const settled = makeRecipe(
+    bandPlaces(trial),
+    flank < 0 ? false : placeOf(trial, flank),
+    trial.recipe.background,
+    trial.recipe.windowPerCm,
+  )
+  const misfit = findMisfit(settled, points)
+  return misfit > 0 ? { ...settled, misfit } : settled
+}

@@ -1,0 +1,21 @@
+import { backgroundAt, FOUR_LN2, scatterOrigin } from './shapes.ts'
+import type { BandFit } from './types.ts'
+
+export interface CurveParts {
+  /** Components (in the order of the fit) plus background, absorbance. */
+  readonly total: Float64Array
+  readonly components: readonly Float64Array[]
+  readonly background: Float64Array
+}
+
+/** The fitted curve and its parts at the given vacuum wavenumbers, for drawings. */
+export const evaluateFit = (fit: Extract<BandFit, { kind: 'fitted' }>, wavenumberPerCm: Float64Array): CurveParts => {
+  const { constant, scatter, scatterExponent } = fit.background
+  const origin = scatterOrigin(fit.recipe)
+  const background = wavenumberPerCm.map((x) => constant + scatter * backgroundAt(scatterExponent ?? 0, origin, x))
+  const components = fit.components.map(({ positionPerCm, widthPerCm, height }) =>
+    wavenumberPerCm.map((x) => height * Math.exp(-FOUR_LN2 * ((x - positionPerCm) / widthPerCm) ** 2)),
+  )
+  const total = background.map((b, i) => components.reduce((sum, part) => sum + part[i]!, b))
+  return { total, components, background }
+}

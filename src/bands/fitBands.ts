@@ -1,0 +1,232 @@
+/** One spectrum under one recipe: bands with their uncertainties, or why there are none. */
+import type { Flag, Spectrum } from '../spectrum/types.ts'
+import { type CurveMaximum, curveMaximum } from './maxima.ts'
+import { disorder, joinNeighbours, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
+import { componentAt } from './shapes.ts'
+import { type Solution, solveRecipe } from './solveRecipe.ts'
+import type { BandFit, FitBands, FittedComponent, Recipe } from './types.ts'
+import { type Uncertainty, uncertaintyOf } from './uncertainty.ts'
+
+/** A band is there when its height exceeds this many standard uncertainties. */
+const HEIGHT_LIMIT = 4
+/** χ²/n over noise and the recipe's misfit from which the recipe is said not to describe the spectrum. */
+const MISFIT_LIMIT = 6
+/** Points to which a spectrum is joined for the fits of other recipes. */
+const JOINED = 240
+
+const unfitted = (spectrum: Spectrum, why: string, points: number, ...flags: Flag[]): BandFit => ({
+  kind: 'unfitted',
+  why,
+  points,
+  windowPerCm: disorder(spectrum) === null ? usedWindow(spectrum) : null,
+  flags: [...new Set([...spectrum.flags, ...flags])],
+})
+
+/**
+ * Fits the recipe, then the other admissible recipes for the model uncertainty. `uModelPerCm` is null where no other recipe is given.
+ * Outcome `unfitted` where the spectrum is in disorder, has too few points, or no band stands above its noise.
+ */
+export const fitBands: FitBands = (spectrum, recipe, admissible) => {
+  const fault = disorder(spectrum)
+  if (fault !== null) return unfitted(spectrum, `The spectrum can't be fitted: ${fault}.`, 0)
+  const points = selectPoints(spectrum, recipe.windowPerCm, recipe.misfit ?? 0)
+  const parameters = 3 * recipe.components.length + recipe.background.length
+  const count = points.x.length
+  if (count === 0) return unfitted(spectrum, 'No point of the recipe’s window can be used.', 0, 'too-few-points')
+  if (count <= parameters + 2)
+    return unfitted(spectrum, `${count} points can't tell ${parameters} parameters.`, count, 'too-few-points')
+  if (!(points.spread > 0)) return unfitted(spectrum, 'The curve is a flat line.', count, 'no-band')
+  const solution = solveRecipe(recipe, points)
+  if (!solution) return unfitted(spectrum, 'The recipe can’t be evaluated on this spectrum.', count, 'not-converged')
+  const uncertainty = uncertaintyOf(recipe, solution)
+  const present = recipe.components.map((_, k) => stands(solution, uncertainty, k))
+  if (!recipe.components.some(({ kind }, k) => kind === 'band' && present[k]))
+    return unfitted(spectrum, 'No band stands above the noise.', count, 'no-band')
+  return fitted(spectrum, recipe, admissible, points, solution, uncertainty, present)
+}
+
+const stands = ({ at }: Solution, uncertainty: Uncertainty | null, k: number): boolean => {
+  const variance = uncertainty?.ofCoefficient(k) ?? null
+  const height = at.coefficients[k]!
+  return height > 0 && (variance === null || height > HEIGHT_LIMIT * Math.sqrt(variance))
+}
+
+const fitted = (
+  spectrum: Spectrum,
+  recipe: Recipe,
+  admissible: readonly Recipe[],
+  points: Selection,
+  solution: Solution,
+  uncertainty: Uncertainty | null,
+  present: readonly boolean[],
+): BandFit => {
+  const spreads = modelSpreads(recipe, admissible, points)
+  const bare = recipe.components.map((_, k) => componentOf(recipe, solution, uncertainty, k))
+  const maxima = curveMaxima(points, bare)
+  const all = bare.map((component, k) => ({
+    ...component,
+    uModelPerCm: spreads[k]!,
+    maximumPerCm: maxima[k]?.positionPerCm ?? null,
+    uMaximumPerCm: maxima[k]?.uPositionPerCm ?? null,
+  }))
+  const order = all.map((_, k) => k).sort((a, b) => all[a]!.positionPerCm - all[b]!.positionPerCm)
+  const n = points.x.length
+  let square = 0
+  let overNoise = 0
+  solution.at.residuals.forEach((r, i) => {
+    const residual = r / points.weight[i]!
+    square += residual ** 2
+    overNoise += (residual / points.noise[i]!) ** 2
+  })
+  const freedom = Math.max(1, n - (uncertainty?.fitted ?? 3 * all.length))
+  return {
+    kind: 'fitted',
+    recipe,
+    components: order.map((k) => all[k]!),
+    positionCovariance:
+      uncertainty && order.map((k) => order.map((l) => positionCovariance(recipe, solution, uncertainty, k, l) ?? 0)),
+    background: backgroundOf(recipe, solution),
+    rms: Math.sqrt(square / n),
+    noise: points.noise.toSorted()[n >> 1]!,
+    reducedChi2: overNoise / freedom,
+    points: n,
+    windowPerCm: [points.x[0]!, points.x[n - 1]!],
+    iterations: solution.iterations,
+    stopped: solution.stopped,
+    flags: [...new Set([...spectrum.flags, ...flagsOf(recipe, points, solution, uncertainty, present)])],
+  }
+}
+
+/** Derivatives of a component's centre by its two search parameters. */
+const centreSlopes = (kind: FittedComponent['kind'], second: number): readonly [number, number] =>
+  kind === 'band' ? [1, 0] : [0, -1 / second ** 2]
+
+const positionCovariance = (
+  recipe: Recipe,
+  { parameters }: Solution,
+  uncertainty: Uncertainty,
+  k: number,
+  l: number,
+): number | null => {
+  const slopes = (i: number) => centreSlopes(recipe.components[i]!.kind, parameters[2 * i + 1]!)
+  const own = slopes(k)
+  const other = slopes(l)
+  let sum = 0
+  for (const i of [0, 1] as const)
+    for (const j of [0, 1] as const) {
+      if (own[i] === 0 || other[j] === 0) continue
+      const c = uncertainty.ofParameter(2 * k + i, 2 * l + j)
+      if (c === null) return null
+      sum += own[i] * other[j] * c
+    }
+  return sum
+}
+
+const root = (variance: number | null): number | null =>
+  variance !== null && variance >= 0 ? Math.sqrt(variance) : null
+
+const componentOf = (
+  recipe: Recipe,
+  solution: Solution,
+  uncertainty: Uncertainty | null,
+  k: number,
+): FittedComponent => {
+  const { kind } = recipe.components[k]!
+  const edge = recipe.windowPerCm[1]
+  const shape = componentAt(kind, solution.parameters[2 * k]!, solution.parameters[2 * k + 1]!, edge)
+  const isBand = kind === 'band'
+  return {
+    kind,
+    positionPerCm: shape.positionPerCm,
+    uPositionPerCm: uncertainty && root(positionCovariance(recipe, solution, uncertainty, k, k)),
+    uModelPerCm: null,
+    maximumPerCm: null,
+    uMaximumPerCm: null,
+    widthPerCm: shape.widthPerCm,
+    uWidthPerCm: isBand && uncertainty ? root(uncertainty.ofParameter(2 * k + 1, 2 * k + 1)) : null,
+    height: solution.at.coefficients[k]! * shape.heightRatio,
+    uHeight: isBand && uncertainty ? root(uncertainty.ofCoefficient(k)) : null,
+  }
+}
+
+/** One maximum belongs to one component only: the nearest. */
+const curveMaxima = (points: Selection, components: readonly FittedComponent[]): readonly (CurveMaximum | null)[] => {
+  const byNoise = reweigh(points, 0)
+  const found = components.map(({ kind, positionPerCm, widthPerCm, height }) =>
+    kind === 'band' && height > 0 ? curveMaximum(byNoise, positionPerCm, widthPerCm) : null,
+  )
+  const distance = (k: number) => Math.abs(found[k]!.positionPerCm - components[k]!.positionPerCm)
+  return found.map((own, k) => {
+    if (!own) return null
+    const rival = found.some(
+      (other, l) =>
+        other &&
+        l !== k &&
+        Math.abs(other.positionPerCm - own.positionPerCm) < 0.05 * components[k]!.widthPerCm &&
+        distance(l) < distance(k),
+    )
+    return rival ? null : own
+  })
+}
+
+const backgroundOf = (recipe: Recipe, { at }: Solution) => {
+  const value = (kind: 'constant' | 'scatter') => {
+    const k = recipe.background.findIndex((term) => term.kind === kind)
+    return k < 0 ? 0 : at.coefficients[recipe.components.length + k]!
+  }
+  const scatter = recipe.background.find((term) => term.kind === 'scatter')
+  return { constant: value('constant'), scatter: value('scatter'), scatterExponent: scatter ? scatter.exponent : null }
+}
+
+const flagsOf = (
+  recipe: Recipe,
+  points: Selection,
+  solution: Solution,
+  uncertainty: Uncertainty | null,
+  present: readonly boolean[],
+): readonly Flag[] => {
+  const flags: Flag[] = []
+  const n = points.x.length
+  if (solution.stopped === 'iterations') flags.push('not-converged')
+  if (!uncertainty) flags.push('ill-conditioned')
+  if (solution.chi2 / n > MISFIT_LIMIT) flags.push('misfit')
+  recipe.components.forEach(({ kind }, k) => {
+    if (kind !== 'band') return
+    const position = solution.parameters[2 * k]!
+    if (!present[k]) flags.push('no-band')
+    else if (position < points.x[0]! || position > points.x[n - 1]!) flags.push('outside-window')
+    const held = [2 * k, 2 * k + 1].some((i) => uncertainty?.ofParameter(i, i) === null)
+    if (held && solution.at.coefficients[k]! > 0) flags.push('at-bound')
+  })
+  return flags
+}
+
+/**
+ * Per component, how far its centre goes under the other admissible recipes: greatest distance / √3, the standard
+ * uncertainty of a rectangular distribution (GUM 4.3.7). Null where there is no other recipe or the component is a flank.
+ */
+const modelSpreads = (recipe: Recipe, admissible: readonly Recipe[], points: Selection): readonly (number | null)[] => {
+  const others = admissible.filter((other) => JSON.stringify(other) !== JSON.stringify(recipe))
+  const centres = (other: Recipe) => {
+    const joined = joinNeighbours(points, other.misfit ?? 0, JOINED)
+    const solution = solveRecipe(other, joined)
+    return solution
+      ? other.components.flatMap(({ kind }, k) =>
+          kind === 'band' && solution.at.coefficients[k]! > 0 ? [solution.parameters[2 * k]!] : [],
+        )
+      : []
+  }
+  if (others.length === 0) return recipe.components.map(() => null)
+  const own = solveRecipe(recipe, joinNeighbours(points, recipe.misfit ?? 0, JOINED))
+  const rivals = others.map(centres)
+  return recipe.components.map(({ kind }, k) => {
+    if (kind !== 'band' || !own) return null
+    const centre = own.parameters[2 * k]!
+    const width = own.parameters[2 * k + 1]!
+    const distances = rivals.flatMap((positions) => {
+      const nearest = Math.min(...positions.map((p) => Math.abs(p - centre)))
+      return nearest < width / 2 ? [nearest] : []
+    })
+    return distances.length > 0 ? Math.max(...distances) / Math.sqrt(3) : null
+  })
+}

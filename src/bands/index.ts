@@ -1,0 +1,4 @@
+/** The room of the bands: from a spectrum to fitted components with uncertainties. */
+export { chooseRecipe } from './chooseRecipe.ts'
+export { type CurveParts, evaluateFit } from './evaluateFit.ts'
+export { fitBands } from './fitBands.ts'

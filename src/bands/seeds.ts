@@ -1,0 +1,70 @@
+/**
+ * Where bands may be: minima of the smoothed second derivative. A Gaussian of width w and height h has curvature
+ * −8 ln2 h/w² at its centre and inflections at ±w/√(8 ln2), so shoulders without a maximum of their own are seen too, and the
+ * distance of the inflections tells the width.
+ */
+import { localPolynomial } from './localPolynomial.ts'
+import type { Points } from './separable.ts'
+import { FOUR_LN2 } from './shapes.ts'
+
+export interface Seed {
+  readonly positionPerCm: number
+  readonly widthPerCm: number
+  /** −curvature · w²/(8 ln2): the height that a Gaussian would have, absorbance. */
+  readonly height: number
+}
+
+/** Half the stretch over which the curve is smoothed: a fraction of the narrowest d–d band. cm⁻¹ */
+const REACH_PER_CM = 700
+const STEPS = 140
+/** Curvature counts when it exceeds this many standard uncertainties. */
+const SIGNIFICANT = 4
+/** Widths of d–d bands at room temperature (common practice: 1500–6000 cm⁻¹), with a margin. */
+export const NARROWEST_PER_CM = 1200
+export const WIDEST_PER_CM = 7000
+/** Seeds below this share of the strongest are structure. */
+const WEAKEST = 0.03
+
+/** Strongest first. */
+export const findSeeds = (points: Points): readonly Seed[] => {
+  const first = points.x[0]!
+  const step = (points.x.at(-1)! - first) / STEPS
+  const at = (k: number) => first + k * step
+  const curvature = Array.from({ length: STEPS + 1 }, (_, k) => {
+    const local = localPolynomial(points, at(k), REACH_PER_CM, 2)
+    if (!local) return { value: 0, u: Infinity }
+    return {
+      value: (2 * local.coefficients[2]!) / REACH_PER_CM ** 2,
+      u: (2 * Math.sqrt(local.covariance[8]!)) / REACH_PER_CM ** 2,
+    }
+  })
+  const crossing = (k: number, direction: 1 | -1) => {
+    let i = k
+    while (i > 0 && i < STEPS && curvature[i]!.value < 0) i += direction
+    return Math.abs(i - k) * step
+  }
+  const seeds = curvature.flatMap(({ value, u }, k): Seed[] => {
+    const isMinimum =
+      k > 0 &&
+      k < STEPS &&
+      value <= curvature[k - 1]!.value &&
+      value < curvature[k + 1]!.value &&
+      value < -SIGNIFICANT * u
+    if (!isMinimum) return []
+    const half = Math.min(crossing(k, 1), crossing(k, -1))
+    const widthPerCm = Math.min(WIDEST_PER_CM, Math.max(NARROWEST_PER_CM, half * Math.sqrt(2 * FOUR_LN2)))
+    return [{ positionPerCm: at(k), widthPerCm, height: (-value * widthPerCm ** 2) / (2 * FOUR_LN2) }]
+  })
+  const strongest = Math.max(0, ...seeds.map((seed) => seed.height))
+  return apart(seeds.filter((seed) => seed.height > WEAKEST * strongest).sort((a, b) => b.height - a.height))
+}
+
+/** Keeps the stronger of two seeds that are closer than the narrowest band. */
+export const apart = (seeds: readonly Seed[]): readonly Seed[] =>
+  seeds.reduce<readonly Seed[]>(
+    (kept, seed) =>
+      kept.some((other) => Math.abs(other.positionPerCm - seed.positionPerCm) < NARROWEST_PER_CM)
+        ? kept
+        : [...kept, seed],
+    [],
+  )
