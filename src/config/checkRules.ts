@@ -1,13 +1,13 @@
 import type { Fault } from '../fault.ts'
 import { suggestion } from '../rules/suggest.ts'
-import { doubleNames, faultAt } from './checks.ts'
+import { doubleNames, faultAt, namesOf } from './checks.ts'
 import type { Parts } from './parse.ts'
 import { fits } from './wildcard.ts'
 
 /** Names, and that every pattern of studies finds one. What the expressions say is judged by the room of rules. */
 export const checkRules = (parts: Parts): readonly Fault[] => {
-  const studies = parts.studies.map(({ value }) => value.study)
-  const certain = parts.clouded.studies.length === 0
+  const studies = namesOf(parts.studies, 'study')
+  const certain = !parts.clouded.has('studies')
   return [
     ...doubleNames(parts.rules, 'rule'),
     ...parts.rules.flatMap((part) =>

@@ -1,12 +1,9 @@
-import { realpathSync } from 'node:fs'
-import { dirname, isAbsolute, join, resolve, sep } from 'node:path'
 import type { Fault } from '../fault.ts'
 import { suggestion } from '../rules/suggest.ts'
-import { sayPath } from './files.ts'
 import { isLoopback, parseListen } from './network.ts'
-import type { Part, Parts } from './parse.ts'
+import type { FilePart, Part, Parts } from './parse.ts'
+import { halfWidthPerCm } from './positions.ts'
 import { faultOfIon, faultOfRole, faultOfSpin, type Trouble } from './roles.ts'
-import type { InstrumentFile } from './schemas/instrument.ts'
 import type { RoomFile } from './schemas/room.ts'
 import type { SpeciesFile } from './schemas/species.ts'
 import type { Path } from './yamlDocument.ts'
@@ -22,6 +19,7 @@ export const faultAt = (part: Part<unknown>, steps: Path, code: string, { what, 
 /** Two parts of one kind with one name. */
 export const doubleNames = <T>(parts: readonly Part<T>[], key: string & keyof T): readonly Fault[] =>
   parts.flatMap((part, i) => {
+    if (part.value[key] === undefined) return []
     const first = parts.slice(0, i).find(({ value }) => value[key] === part.value[key])
     if (first === undefined) return []
     const { at, line } = first.document.placeOf([...first.path, key])
@@ -33,21 +31,20 @@ export const doubleNames = <T>(parts: readonly Part<T>[], key: string & keyof T)
     ]
   })
 
-/** Null where the name is known (or may stand in a file that has faults of its own). */
-export const unknownName = (
-  kind: string,
-  name: string,
-  known: readonly string[],
-  clouded: readonly string[],
-): Trouble | null => {
-  if (known.includes(name) || clouded.includes(name) || clouded.includes('*')) return null
+/** The names that parts of one kind give. */
+export const namesOf = <T, K extends keyof T>(parts: readonly Part<T>[], key: K) =>
+  parts.flatMap(({ value }) => (value[key] === undefined ? [] : [value[key]])) as Exclude<T[K], undefined>[]
+
+/** Null where the name is known, or may stand in a file whose name cannot be told (`clouded`). */
+export const unknownName = (kind: string, name: string, known: readonly string[], clouded: boolean): Trouble | null => {
+  if (known.includes(name) || clouded) return null
   const near = suggestion(name, known)
   const list = known.length === 0 ? `there is no ${kind} at all` : `known are ${known.join(', ')}`
   return { what: `there is no ${kind} ${name}`, remedy: near === null ? list : `did you mean ${near}?` }
 }
 
 /** Mail and web page: nothing in clear text, nothing without a token, beyond this machine. */
-export const checkRoom = (room: Part<RoomFile>): readonly Fault[] => {
+export const checkRoom = (room: FilePart<RoomFile>): readonly Fault[] => {
   const { mail, web } = room.value
   const faults: Fault[] = []
   const add = (steps: Path, code: string, what: string, remedy: string) =>
@@ -85,124 +82,39 @@ export const checkRoom = (room: Part<RoomFile>): readonly Fault[] => {
   return faults
 }
 
-/** Names, drop folders, and what is read off file names. */
-export const checkInstruments = (parts: Parts, folder: string): readonly Fault[] => [
-  ...doubleNames(parts.instruments, 'instrument'),
-  ...parts.instruments.flatMap(checkInstrument),
-  ...dropFolders(parts, folder),
-]
-
-const checkInstrument = (part: Part<InstrumentFile>): readonly Fault[] => {
-  const { sample, files } = part.value
-  const faults: Fault[] = []
-  const trouble = sample.pattern === undefined ? null : faultOfPattern(sample.pattern, sample.from)
-  if (trouble !== null) faults.push(faultAt(part, ['sample', 'pattern'], 'sample-pattern', trouble))
-  if (isAbsolute(files) || files.split('/').includes('..'))
-    faults.push(
-      faultAt(part, ['files'], 'files-pattern', {
-        what: `"${files}" leads out of the drop folder`,
-        remedy: 'write a pattern relative to the drop folder, such as **/*.csv',
-      }),
-    )
-  return faults
-}
-
-const faultOfPattern = (pattern: string, from: string): Trouble | null => {
-  if (from === 'header')
-    return {
-      what: 'a pattern, but the name is read from the header',
-      remedy: 'delete the pattern, or write from: filename',
-    }
-  try {
-    new RegExp(pattern, 'u')
-  } catch (error) {
-    return { what: `no regular expression (${(error as Error).message})`, remedy: 'mend it' }
-  }
-  return pattern.includes('(?<sample>')
-    ? null
-    : {
-        what: 'the pattern has no group (?<sample>…)',
-        remedy: "put the part that is the sample's name into (?<sample>…)",
-      }
-}
-
-interface Holding {
-  readonly part: Part<unknown>
-  readonly step: string
-  readonly owner: string
-  readonly path: string
-}
-
-/** One file must be one instrument's, and the database must not lie among what is watched. */
-const dropFolders = (parts: Parts, folder: string): readonly Fault[] => {
-  const drops = parts.instruments.map(
-    (part): Holding => ({
-      part,
-      step: 'drop',
-      owner: part.value.instrument,
-      path: trueFolder(resolve(folder, part.value.drop)),
-    }),
-  )
-  const { room } = parts
-  const data: readonly Holding[] =
-    room === null
-      ? []
-      : [{ part: room, step: 'data', owner: 'the data folder', path: trueFolder(resolve(folder, room.value.data)) }]
-  const all = [...data, ...drops]
-  return drops.flatMap((one) =>
-    all
-      .slice(0, all.indexOf(one))
-      .filter((other) => one.path === other.path || inside(one.path, other.path) || inside(other.path, one.path))
-      .map((other) => faultAt(one.part, [one.step], 'drop-folder', overlap(one, other))),
-  )
-}
-
-const overlap = (one: Holding, other: Holding): Trouble => ({
-  what:
-    one.path === other.path
-      ? `${sayPath(one.path)} is the folder of ${other.owner} too`
-      : inside(one.path, other.path)
-        ? `${sayPath(one.path)} lies inside ${sayPath(other.path)} of ${other.owner}`
-        : `${sayPath(one.path)} holds ${sayPath(other.path)} of ${other.owner}`,
-  remedy: 'give each a folder of its own, side by side',
-})
-
-const inside = (inner: string, outer: string): boolean => inner.startsWith(outer.endsWith(sep) ? outer : outer + sep)
-
-/** With symbolic links followed as far as the folder exists. */
-const trueFolder = (path: string): string => {
-  try {
-    return realpathSync(path)
-  } catch {
-    const above = dirname(path)
-    return above === path ? path : join(trueFolder(above), path.slice(above.length))
-  }
-}
-
 /** Ion, spin and roles. */
 export const checkSpecies = (parts: Parts): readonly Fault[] => [
   ...doubleNames(parts.species, 'species'),
   ...parts.species.flatMap(checkOneSpecies),
 ]
 
-const checkOneSpecies = (part: Part<SpeciesFile>): readonly Fault[] => {
+const checkOneSpecies = (part: FilePart<SpeciesFile>): readonly Fault[] => {
   const { value } = part
   const found = (steps: Path, code: string, trouble: Trouble | null) =>
     trouble === null ? [] : [faultAt(part, steps, code, trouble)]
-  const roles = value.bands.map(({ role }) => role)
+  const { ion, geometry, spin, bands = [], 'may-become': mayBecome = [] } = value
+  const centre =
+    ion === undefined || geometry === undefined || part.damaged.includes('spin') ? null : { ion, geometry, spin }
+  const spinFault = centre === null ? null : faultOfSpin(centre)
+  // without its spin nobody knows which roles the ion has
+  const roleFault = (role: string) => (centre === null || spinFault !== null ? null : faultOfRole(role, centre))
+  const roles = bands.map(({ role }) => role)
   return [
-    ...found(['ion'], 'unknown-ion', faultOfIon(value.ion)),
-    ...found(['spin'], 'spin', faultOfSpin(value)),
-    ...roles.flatMap((role, i) => found(['bands', i, 'role'], 'unknown-role', faultOfRole(role, value))),
+    ...found(['ion'], 'unknown-ion', ion === undefined ? null : faultOfIon(ion)),
+    ...found(['spin'], 'spin', spinFault),
+    ...roles.flatMap((role, i) => found(['bands', i, 'role'], 'unknown-role', roleFault(role))),
     ...roles.flatMap((role, i) =>
       roles.indexOf(role) < i
         ? found(['bands', i, 'role'], 'double-role', { what: `${role} stands twice`, remedy: 'keep one of them' })
         : [],
     ),
-    ...value['may-become'].flatMap(({ near }, i) =>
-      Object.keys(near).flatMap((role) =>
-        found(['may-become', i, 'near', role], 'unknown-role', faultOfRole(role, value)),
-      ),
+    ...bands.flatMap(({ near, within }, i) =>
+      halfWidthPerCm(near, within) === null ? found(['bands', i, 'within'], 'band-range', TOO_WIDE) : [],
+    ),
+    ...mayBecome.flatMap(({ near }, i) =>
+      Object.keys(near).flatMap((role) => found(['may-become', i, 'near', role], 'unknown-role', roleFault(role))),
     ),
   ]
 }
+
+const TOO_WIDE: Trouble = { what: 'the range reaches to zero', remedy: 'write how far from `near` the band may lie' }

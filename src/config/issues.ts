@@ -58,6 +58,11 @@ const say = (issue: Issue, path: Path, document: YamlDocument): readonly [what: 
       return [prefixed(key, issue.message), typeof remedy === 'string' ? remedy : 'mend it']
     }
     case 'invalid_type':
+      if (key.endsWith('password') || key.endsWith('token'))
+        return [
+          `${key} ${sayMake(valueAt(document.value, path))}`,
+          'say where it is kept: `{ credential: NAME }`, `{ env: NAME }` or `{ file: PATH }`',
+        ]
       return [`${key} ${sayMake(valueAt(document.value, path))}`, `write ${sayExpected(issue.expected)} here`]
     case 'invalid_value': {
       const value = valueAt(document.value, path)

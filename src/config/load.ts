@@ -3,12 +3,14 @@ import { resolve } from 'node:path'
 import type { Fault } from '../fault.ts'
 import { toInstrument, toMail, toSpecies, toStandard, toStudy, toWeb } from './build.ts'
 import { toRules } from './buildRules.ts'
+import { checkInstruments } from './checkInstruments.ts'
 import { checkRules } from './checkRules.ts'
 import { checkStudies } from './checkStudies.ts'
-import { checkInstruments, checkRoom, checkSpecies, doubleNames } from './checks.ts'
+import { checkRoom, checkSpecies, doubleNames } from './checks.ts'
 import { type ConfigFile, readFolder, sayPath } from './files.ts'
 import { byPlace } from './issues.ts'
-import { type Parts, parseFiles } from './parse.ts'
+import { type FilePart, type Parts, parseFiles } from './parse.ts'
+import type { RoomFile } from './schemas/room.ts'
 import type { Config, RuleDefinition } from './types.ts'
 
 export type ConfigLoaded =
@@ -40,7 +42,7 @@ const checkAll = (parts: Parts, root: string): readonly Fault[] => [
   ...checkStudies(parts),
   ...checkRules(parts),
   ...doubleNames(parts.standards, 'standard'),
-  ...(parts.instruments.length > 0 || parts.clouded.instruments.length > 0 ? [] : [noInstrument(root)]),
+  ...(parts.instruments.length > 0 || parts.clouded.has('instruments') ? [] : [noInstrument(root)]),
 ]
 
 const noInstrument = (root: string): Fault => ({
@@ -50,13 +52,17 @@ const noInstrument = (root: string): Fault => ({
   remedy: 'write instruments/NAME.yaml',
 })
 
+/** Without faults no part lacks a key that its schema demands. */
+const whole = <T>(part: FilePart<T>): T => part.value as T
+
 const build = (
   parts: Parts,
-  { value: room }: NonNullable<Parts['room']>,
+  file: FilePart<RoomFile>,
   files: readonly ConfigFile[],
   root: string,
 ): Omit<Config, 'rules'> => {
   const text = textOf(files)
+  const room = whole(file)
   return {
     folder: root,
     sha256: createHash('sha256').update(text).digest('hex'),
@@ -67,10 +73,10 @@ const build = (
     keeper: room.keeper,
     mail: toMail(room.mail, root),
     web: toWeb(room.web, root),
-    instruments: parts.instruments.map(({ value }) => toInstrument(value, root)),
-    species: parts.species.map(({ value }) => toSpecies(value)),
-    studies: parts.studies.map(({ value }) => toStudy(value)),
-    standards: parts.standards.map(({ value }) => toStandard(value)),
+    instruments: parts.instruments.map((part) => toInstrument(whole(part), root)),
+    species: parts.species.map((part) => toSpecies(whole(part))),
+    studies: parts.studies.map((part) => toStudy(whole(part))),
+    standards: parts.standards.map((part) => toStandard(whole(part))),
   }
 }
 

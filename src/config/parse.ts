@@ -18,7 +18,7 @@ export const SCHEMAS = {
   studies: studySchema,
   rules: rulesSchema,
   standards: standardSchema,
-} as const satisfies Record<Kind, z.ZodType>
+} as const satisfies Record<Kind, z.ZodObject>
 
 /** A part of the configuration that fits its schema, with the file it stands in (and where in it). */
 export interface Part<T> {
@@ -27,82 +27,83 @@ export interface Part<T> {
   readonly path: Path
 }
 
-/** All that could be read; a file with faults is missing here, but the names it claims are known. */
+/** Of a file with faults, the keys that have none: what is wrong elsewhere with these is told at once too. */
+export interface FilePart<T> extends Part<Partial<T>> {
+  /** Keys that have faults, or are missing. */
+  readonly damaged: readonly string[]
+}
+
+/** All that could be read. Where there is no fault, every part is whole. */
 export interface Parts {
-  readonly room: Part<RoomFile> | null
-  readonly instruments: readonly Part<InstrumentFile>[]
-  readonly species: readonly Part<SpeciesFile>[]
-  readonly studies: readonly Part<StudyFile>[]
+  readonly room: FilePart<RoomFile> | null
+  readonly instruments: readonly FilePart<InstrumentFile>[]
+  readonly species: readonly FilePart<SpeciesFile>[]
+  readonly studies: readonly FilePart<StudyFile>[]
   readonly rules: readonly Part<RuleFile>[]
-  readonly standards: readonly Part<StandardFile>[]
-  /** Names in files that have faults of their own: nobody is told that these don't exist. */
-  readonly clouded: Readonly<Record<Kind, readonly string[]>>
+  readonly standards: readonly FilePart<StandardFile>[]
+  /** Kinds with a file whose name cannot be told: of these, nobody is told that a name does not exist. */
+  readonly clouded: ReadonlySet<Kind>
   readonly faults: readonly Fault[]
 }
 
-interface Parsed {
-  readonly kind: 'parsed'
-  readonly file: Kind
-  readonly document: YamlDocument
-  readonly value: unknown
-}
-
-interface Refused {
-  readonly kind: 'refused'
-  readonly file: Kind
+interface ParsedFile {
+  readonly kind: Kind
   /** Null where the file is no YAML. */
-  readonly document: YamlDocument | null
-  readonly names: readonly string[]
+  readonly part: FilePart<unknown> | null
   readonly faults: readonly Fault[]
 }
 
 /** Reads every file against its schema, and goes on past the ones that have faults. */
 export const parseFiles = (files: readonly ConfigFile[]): Parts => {
   const all = files.map(parseFile)
-  const parts = <T>(kind: Kind): readonly Part<T>[] =>
-    all.flatMap((one) =>
-      one.kind === 'parsed' && one.file === kind ? [{ value: one.value as T, document: one.document, path: [] }] : [],
-    )
-  const clouded = (kind: Kind) => all.flatMap((one) => (one.kind === 'refused' && one.file === kind ? one.names : []))
+  const parts = <T>(kind: Kind) =>
+    all.flatMap((one) => (one.kind === kind && one.part !== null ? [one.part as FilePart<T>] : []))
   return {
     room: parts<RoomFile>('room')[0] ?? null,
     instruments: parts('instruments'),
     species: parts('species'),
     studies: parts('studies'),
-    rules: all.flatMap((one) => (one.file === 'rules' ? rulesOf(one) : [])),
+    rules: parts('rules').flatMap(rulesOf),
     standards: parts('standards'),
-    clouded: {
-      room: [],
-      instruments: clouded('instruments'),
-      species: clouded('species'),
-      studies: clouded('studies'),
-      rules: clouded('rules'),
-      standards: clouded('standards'),
-    },
-    faults: all.flatMap((one) => (one.kind === 'refused' ? one.faults : [])),
+    clouded: new Set(
+      all.filter(({ part, kind }) => part === null || part.damaged.includes(NAME_KEYS[kind])).map(({ kind }) => kind),
+    ),
+    faults: all.flatMap((one) => one.faults),
   }
 }
 
-/** Of a faulty file of rules, those that are right: what is wrong in their expressions is told at once too. */
-const rulesOf = ({ document }: Parsed | Refused): readonly Part<RuleFile>[] => {
-  const written = valueAt(document?.value, ['rules'])
+/** Of a file of rules, those that are right. */
+const rulesOf = ({ document }: Part<unknown>): readonly Part<RuleFile>[] => {
+  const written = valueAt(document.value, ['rules'])
   return (Array.isArray(written) ? written : []).flatMap((one: unknown, i) => {
     const outcome = ruleSchema.safeParse(one)
-    return outcome.success && document !== null ? [{ value: outcome.data, document, path: ['rules', i] }] : []
+    return outcome.success ? [{ value: outcome.data, document, path: ['rules', i] }] : []
   })
 }
 
-const parseFile = (file: ConfigFile): Parsed | Refused => {
-  const { kind } = file
-  const reading = readYaml(file.text, file.at)
-  if (reading.kind === 'refused')
-    return { kind: 'refused', file: kind, document: null, names: ['*'], faults: reading.faults }
+const parseFile = ({ kind, text, at }: ConfigFile): ParsedFile => {
+  const reading = readYaml(text, at)
+  if (reading.kind === 'refused') return { kind, part: null, faults: reading.faults }
   const { document } = reading
-  const schema: z.ZodType = SCHEMAS[kind]
+  const schema: z.ZodObject = SCHEMAS[kind]
   const outcome = schema.safeParse(document.value)
-  if (outcome.success) return { kind: 'parsed', file: kind, document, value: outcome.data }
-  const faults = faultsOf(outcome.error.issues, document, schema)
-  return { kind: 'refused', file: kind, document, names: namesIn(document.value, kind), faults }
+  if (outcome.success) return { kind, part: { value: outcome.data, document, path: [], damaged: [] }, faults: [] }
+  const { issues } = outcome.error
+  return { kind, part: undamaged(schema, document, issues), faults: faultsOf(issues, document, schema) }
+}
+
+/** The keys of a faulty file that are right by themselves. Null where the file is no mapping. */
+const undamaged = (
+  schema: z.ZodObject,
+  document: YamlDocument,
+  issues: readonly z.core.$ZodIssue[],
+): FilePart<unknown> | null => {
+  const { value } = document
+  if (typeof value !== 'object' || value === null || Array.isArray(value)) return null
+  const damaged = issues.flatMap(({ path }) => (path.length === 0 ? [] : [String(path[0])]))
+  const right = Object.entries(value).filter(([key]) => key in schema.shape && !damaged.includes(key))
+  const outcome = schema.partial().safeParse(Object.fromEntries(right))
+  return outcome.success ? { value: outcome.data, document, path: [], damaged } : null
 }
 
 const NAME_KEYS: Readonly<Record<Kind, string>> = {
@@ -110,16 +111,6 @@ const NAME_KEYS: Readonly<Record<Kind, string>> = {
   instruments: 'instrument',
   species: 'species',
   studies: 'study',
-  rules: 'rule',
+  rules: 'rules',
   standards: 'standard',
-}
-
-/** The names that a faulty file means to give; `*` where even that cannot be told. */
-const namesIn = (value: unknown, kind: Kind): readonly string[] => {
-  const entries = kind === 'rules' ? ((value as { rules?: unknown })?.rules ?? []) : [value]
-  const names = (Array.isArray(entries) ? entries : []).map((entry: unknown) => {
-    const found = (entry as Record<string, unknown> | null)?.[NAME_KEYS[kind]]
-    return typeof found === 'string' && found !== '' ? found : '*'
-  })
-  return names.length > 0 ? names : ['*']
 }
