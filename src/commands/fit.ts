@@ -191,7 +191,10 @@ const plot = (out: string, fits: readonly { readonly name: string; readonly anal
   if (only === undefined) return
   if (more.length > 0)
     throw usageFault('--plot', `${fits.length} spectra do not fit in one drawing`, 'plot one spectrum at a time')
-  const { spectrum, fit } = only.analysis
+  const { spectrum, fit, bands } = only.analysis
   if (spectrum === null) return
-  writeFileSync(out, spectrumPicture({ spectrum, fit, title: basename(only.name) }))
+  writeFileSync(
+    out,
+    spectrumPicture({ spectrum, fit, title: basename(only.name), roles: bands.map(({ role }) => role) }),
+  )
 }
