@@ -31,14 +31,14 @@ const MOST_BYTES = 1_000_000
  */
 export const findConfigFolder = (option: string | undefined): string => {
   const named = option ?? (process.env.TENDQ_CONFIG || undefined)
-  const places = named === undefined ? ['config', '/etc/tendq'] : [named]
+  const places = (named === undefined ? ['config', '/etc/tendq'] : [named]).map((place) => resolve(place))
   const found = places.find((place) => existsSync(place) && statSync(place).isDirectory())
-  if (found !== undefined) return resolve(found)
+  if (found !== undefined) return found
   const at = option !== undefined ? '--config' : named !== undefined ? 'TENDQ_CONFIG' : 'configuration'
   const fault: Fault = {
     code: 'no-configuration',
     place: { at },
-    what: `there is no folder ${places.map((place) => resolve(place)).join(', nor ')}`,
+    what: `there is no folder ${places.join(', nor ')}`,
     remedy: 'name the folder with --config, or write a starting configuration with `tendq init DIR`',
   }
   throw new FaultError([fault], EXIT.config)
