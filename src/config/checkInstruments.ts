@@ -19,6 +19,14 @@ const checkInstrument = (part: FilePart<InstrumentFile>): readonly Fault[] => {
   const faults: Fault[] = []
   const trouble = sample.pattern === undefined ? null : faultOfPattern(sample.pattern, sample.from)
   if (trouble !== null) faults.push(faultAt(part, ['sample', 'pattern'], 'sample-pattern', trouble))
+  const { delimiter, decimal } = part.value.reading ?? {}
+  if (delimiter === ',' && decimal === ',')
+    faults.push(
+      faultAt(part, ['reading', 'decimal'], 'reading', {
+        what: 'the comma cannot both part columns and mark decimals',
+        remedy: 'mend `delimiter` or `decimal`',
+      }),
+    )
   if (isAbsolute(files) || files.split('/').includes('..'))
     faults.push(
       faultAt(part, ['files'], 'files-pattern', {

@@ -46,9 +46,11 @@ export const findConfigFolder = (option: string | undefined): string => {
 
 /** All YAML files of a configuration folder; a YAML file where none is looked for is a fault, never overlooked. */
 export const readFolder = (folder: string): FolderReading => {
+  const paths = yamlPaths(folder)
+  if ('code' in paths) return { files: [], faults: [paths] }
   const faults: Fault[] = []
   const files: ConfigFile[] = []
-  for (const path of yamlPaths(folder)) {
+  for (const path of paths) {
     const at = sayPath(join(folder, path))
     const kind = kindOf(path)
     const outcome = kind === null ? misplaced(path, at) : readOne(join(folder, path), at)
@@ -72,14 +74,23 @@ export const sayPath = (path: string): string => {
 }
 
 /** Hidden files and editors' copies (`uv1.yaml~`) are no configuration. */
-const yamlPaths = (folder: string): readonly string[] => {
-  const list = (at: string) =>
-    readdirSync(join(folder, at), { withFileTypes: true }).filter(({ name }) => !name.startsWith('.'))
+const yamlPaths = (folder: string): readonly string[] | Fault => {
+  const list = (at: string) => readdirSync(join(folder, at)).filter((name) => !name.startsWith('.'))
   const isFolder = (path: string) => statSync(join(folder, path), { throwIfNoEntry: false })?.isDirectory() === true
-  return list('')
-    .flatMap(({ name }) => (isFolder(name) ? list(name).map((inner) => `${name}/${inner.name}`) : [name]))
-    .filter((path) => /\.ya?ml$/i.test(path) && !isFolder(path))
-    .sort((a, b) => (a < b ? -1 : 1))
+  try {
+    return list('')
+      .flatMap((name) => (isFolder(name) ? list(name).map((inner) => `${name}/${inner}`) : [name]))
+      .filter((path) => /\.ya?ml$/i.test(path) && !isFolder(path))
+      .sort((a, b) => (a < b ? -1 : 1))
+  } catch (error) {
+    const { code, path = folder } = error as NodeJS.ErrnoException
+    return {
+      code: 'unreadable-folder',
+      place: { at: sayPath(path) },
+      what: `the folder cannot be read (${code})`,
+      remedy: 'see that it is there and that the account of tendq may read it',
+    }
+  }
 }
 
 const kindOf = (path: string): Kind | null => {

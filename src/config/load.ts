@@ -28,6 +28,8 @@ export type JudgeRule = (rule: RuleDefinition) => readonly Fault[]
 export const loadConfig = (folder: string, judgeRule: JudgeRule = () => []): ConfigLoaded => {
   const root = resolve(folder)
   const { files, faults: unread } = readFolder(root)
+  const gone = unread.find(({ code }) => code === 'unreadable-folder')
+  if (gone !== undefined) return { kind: 'refused', faults: [gone] }
   const parts = parseFiles(files)
   const rules = toRules(parts.rules, { at: sayPath(resolve(root, 'rules')) })
   const faults = [...unread, ...parts.faults, ...checkAll(parts, root), ...rules.flatMap(judgeRule)].sort(byPlace)

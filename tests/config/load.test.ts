@@ -1,5 +1,6 @@
-import { readFileSync } from 'node:fs'
+import { readFileSync, writeFileSync } from 'node:fs'
 import { join } from 'node:path'
+import fc from 'fast-check'
 import { describe, expect, test } from 'vitest'
 import { isControl, loadConfig, speciesOf, studyOf } from '../../src/config/index.ts'
 import { compileRule } from '../../src/rules/index.ts'
@@ -7,6 +8,7 @@ import { configOf, EXAMPLE, exampleWith, faultsWith } from './folders.ts'
 
 const ROOM = readFileSync(join(EXAMPLE, 'tendq.yaml'), 'utf8')
 const AGING = readFileSync(join(EXAMPLE, 'studies/aging.yaml'), 'utf8')
+const UV1 = readFileSync(join(EXAMPLE, 'instruments/uv1.yaml'), 'utf8')
 const BANDS = readFileSync(join(EXAMPLE, 'rules/bands.yaml'), 'utf8')
 
 const rulesFile = (...rules: readonly string[]) => `rules:\n${rules.map((rule) => `  - ${rule}\n`).join('')}`
@@ -180,6 +182,79 @@ describe('every fault is named at its place', () => {
     expect(fault({ 'instruments/uv1.yaml': null, 'instruments/uv2.yaml': null })).toEqual([
       expect.stringContaining('nothing would be watched'),
     ]))
+
+  test('a folder that has gone', () => {
+    expect(loadConfig(join(exampleWith({}), 'gone'))).toMatchObject({
+      kind: 'refused',
+      faults: [{ what: 'the folder cannot be read (ENOENT)' }],
+    })
+  })
+
+  test('a comma for columns and for decimals', () =>
+    expect(fault({ 'instruments/uv1.yaml': UV1.replace('delimiter: ";"', 'delimiter: ","') }).join()).toContain(
+      'the comma cannot both',
+    ))
+
+  // no outside reference: whatever a hand or a disk does to a file, the answer is faults with places, never a crash
+  test('whatever was cut, doubled or mistyped, at a place that is there', () => {
+    const paths = [
+      'tendq.yaml',
+      'instruments/uv1.yaml',
+      'species/chloropentaammine.yaml',
+      'studies/aging.yaml',
+      'rules/bands.yaml',
+    ]
+    const folder = exampleWith({})
+    const damage = fc.record({
+      path: fc.constantFrom(...paths),
+      at: fc.double({ min: 0, max: 1, noNaN: true }),
+      cut: fc.nat(40),
+      typed: fc.string({
+        unit: fc.constantFrom(
+          ':',
+          ' ',
+          '-',
+          '[',
+          '{',
+          '"',
+          '&a',
+          '*a',
+          '\n',
+          '\t',
+          '#',
+          '?',
+          'x',
+          '0',
+          '|',
+          '!!',
+          '<<',
+          '%',
+        ),
+        maxLength: 4,
+      }),
+    })
+    fc.assert(
+      fc.property(damage, ({ path, at, cut, typed }) => {
+        const whole = readFileSync(join(EXAMPLE, path), 'utf8')
+        const from = Math.floor(at * whole.length)
+        const text = whole.slice(0, from) + typed + whole.slice(from + cut)
+        writeFileSync(join(folder, path), text)
+        const loaded = loadConfig(folder)
+        writeFileSync(join(folder, path), whole)
+        const lines = text.split('\n')
+        return (
+          loaded.kind === 'loaded' ||
+          loaded.faults.every(
+            ({ place, what, remedy }) =>
+              what !== '' &&
+              remedy !== '' &&
+              (!place.at.endsWith(path) || place.line === undefined || place.line <= lines.length + 1),
+          )
+        )
+      }),
+      { numRuns: 150 },
+    )
+  })
 
   describe('what the room lets out', () => {
     test('letters in clear text beyond this machine', () =>
