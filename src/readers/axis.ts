@@ -1,0 +1,109 @@
+/** What must hold of an axis whatever the format: it runs one way, its values can be of its unit, no end stands alone. */
+import type { Fault, Place } from '../fault.ts'
+import type { AxisUnit } from './types.ts'
+
+/** Values that a spectrum of d–d bands can have in each unit; a file outside is read wrongly or is another kind of spectrum. */
+const RANGE: Readonly<Record<AxisUnit, readonly [number, number]>> = {
+  nm: [150, 10_000],
+  um: [0.15, 10],
+  'cm^-1': [1000, 67_000],
+  eV: [0.12, 8.3],
+}
+
+/** Whether all values can be of this unit. */
+export const canBe = (x: Float64Array, unit: AxisUnit): boolean =>
+  x.every((v) => v >= RANGE[unit][0] && v <= RANGE[unit][1])
+
+/** Fewest points that make a curve. */
+const FEWEST = 3
+
+/** The first thing wrong with an axis, or null. `placeOf` says where point i stands. */
+export const axisFault = (
+  x: Float64Array,
+  y: Float64Array,
+  unit: AxisUnit,
+  placeOf: (i: number) => Place,
+): Fault | null => {
+  if (x.length < FEWEST) {
+    return {
+      code: 'too-few-points',
+      place: placeOf(0),
+      what: `only ${x.length} points`,
+      remedy: 'export the whole spectrum',
+    }
+  }
+  const wrong = x.findIndex((v) => v < RANGE[unit][0] || v > RANGE[unit][1])
+  if (wrong >= 0) {
+    const what = `${x[wrong]} cannot be a value in ${unit} (${RANGE[unit][0]} to ${RANGE[unit][1]})`
+    return {
+      code: 'axis-unit',
+      place: placeOf(wrong),
+      what,
+      remedy: 'check the unit of the axis, and set it with `reading: { x: … }`',
+    }
+  }
+  const sign = Math.sign(x.at(-1)! - x[0]!)
+  for (let i = 1; i < x.length; i++) {
+    const step = (x[i]! - x[i - 1]!) * sign
+    if (step > 0 || (step === 0 && sign !== 0 && Object.is(y[i], y[i - 1]))) continue
+    const what = `the axis turns back or stands still: ${x[i - 1]} is followed by ${x[i]}`
+    return {
+      code: 'axis-order',
+      place: placeOf(i),
+      what,
+      remedy: 'look for a misprint, or for two scans one after the other',
+    }
+  }
+  return loneEnd(x, placeOf)
+}
+
+/** A first or last point far from an otherwise regular axis: a misprint or a damaged line moves it just so. */
+const loneEnd = (x: Float64Array, placeOf: (i: number) => Place): Fault | null => {
+  const n = x.length
+  for (const [end, next, inward] of [
+    [0, 1, 1],
+    [n - 1, n - 2, -1],
+  ] as const) {
+    const near: number[] = []
+    for (let k = 0; k < 6 && next + (k + 1) * inward >= 0 && next + (k + 1) * inward < n; k++) {
+      near.push(Math.abs(x[next + (k + 1) * inward]! - x[next + k * inward]!))
+    }
+    const step = Math.abs(x[end]! - x[next]!)
+    const regular = near.length >= 2 && Math.max(...near) <= 1.5 * Math.min(...near)
+    if (regular && (step > 1.9 * Math.max(...near) || step < 0.1 * Math.min(...near))) {
+      const what = `${x[end]} stands ${step} away from its neighbour on an axis with steps near ${near[0]}`
+      return {
+        code: 'axis-jump',
+        place: placeOf(end),
+        what,
+        remedy: 'look for a misprint or missing lines at that end',
+      }
+    }
+  }
+  return null
+}
+
+/** Places inside where the axis jumps by more than 2.5 of the usual steps: points are missing there. One warning for all. */
+export const gapWarnings = (x: Float64Array, unit: AxisUnit, placeOf: (i: number) => Place): readonly Fault[] => {
+  const gaps: number[] = []
+  for (let i = 1; i < x.length; i++) {
+    const step = Math.abs(x[i]! - x[i - 1]!)
+    const before = i > 1 ? Math.abs(x[i - 1]! - x[i - 2]!) : Infinity
+    const after = i < x.length - 1 ? Math.abs(x[i + 1]! - x[i]!) : Infinity
+    const usual = Math.min(before, after)
+    if (usual < Infinity && step > 1.9 * usual) gaps.push(i)
+  }
+  const first = gaps[0]
+  if (first === undefined) return []
+  const what = `the axis is uneven at ${gaps.length} place${gaps.length === 1 ? '' : 's'}, first between ${x[first - 1]} and ${x[first]} ${unit}`
+  return [{ code: 'axis-gap', place: placeOf(first), what, remedy: 'check that no points are missing' }]
+}
+
+/** What the values alone admit. nm up to 1400 and cm⁻¹ from 8000 are how spectra in the visible are written; the rest is open. */
+export const unitsByValue = (x: Float64Array): readonly AxisUnit[] => {
+  const low = Math.min(x[0]!, x.at(-1)!)
+  const high = Math.max(x[0]!, x.at(-1)!)
+  if (low >= RANGE.nm[0] && high <= 1400) return ['nm']
+  if (low >= 3500 && high > 10_000 && high <= RANGE['cm^-1'][1]) return ['cm^-1']
+  return (['nm', 'cm^-1', 'um', 'eV'] as const).filter((unit) => low >= RANGE[unit][0] && high <= RANGE[unit][1])
+}

@@ -1,0 +1,285 @@
+/**
+ * The tables of JCAMP-DX, checked at every place where they state something twice: the abscissa that begins each line, the ordinate
+ * that a line after differences repeats, the number of points, the first and last abscissa and their distance. An axis
+ * that contradicts itself moves every band, so it is refused; FIRSTY and extrema move nothing and become warnings.
+ */
+import type { Fault } from '../fault.ts'
+import { decodeLine } from './asdf.ts'
+import type { Block, JcampRecord } from './jcampRecords.ts'
+
+export type Points =
+  | {
+      readonly kind: 'points'
+      readonly x: Float64Array
+      readonly y: Float64Array
+      readonly lines: readonly number[]
+      readonly forms: string
+      readonly warnings: readonly Fault[]
+    }
+  | { readonly kind: 'faulty'; readonly fault: Fault }
+
+const PLAIN = /^[+-]?(?:\d+(?:\.\d*)?|\.\d+)(?:[eE][+-]?\d{1,3})?$/
+
+/** A number of a header and the size of a unit in its last written place. */
+interface Written {
+  readonly value: number
+  readonly unit: number
+  readonly line: number
+}
+
+const unitOf = (text: string): number => {
+  const [mantissa, exponent] = text.toLowerCase().split('e') as [string, string?]
+  const digits = mantissa.includes('.') ? mantissa.length - mantissa.indexOf('.') - 1 : 0
+  return 10 ** (Number(exponent ?? 0) - digits)
+}
+
+interface Numbers {
+  readonly of: (label: string) => Written | null
+  readonly fault: Fault | null
+}
+
+const NUMERIC = ['XFACTOR', 'YFACTOR', 'FIRSTX', 'LASTX', 'DELTAX', 'NPOINTS', 'FIRSTY', 'MAXY', 'MINY', 'MAXX', 'MINX']
+const MOVES_NOTHING = ['FIRSTY', 'MAXY', 'MINY']
+
+const numbersOf = (block: Block, file: string): Numbers => {
+  const found = new Map<string, Written>()
+  const fault = (line: number, code: string, what: string): Numbers => ({
+    of: () => null,
+    fault: { code, place: { at: file, line }, what, remedy: 'export the file again' },
+  })
+  for (const { label, name, value, line } of block.records) {
+    if (!NUMERIC.includes(label) || value === '') continue
+    if (!PLAIN.test(value)) {
+      if (MOVES_NOTHING.includes(label)) continue
+      return fault(line, 'not-a-number', `##${name}= "${value}" is no number`)
+    }
+    const earlier = found.get(label)
+    if (earlier && earlier.value !== Number(value))
+      return fault(line, 'label-twice', `##${name}= stands twice, with ${earlier.value} and ${value}`)
+    found.set(label, { value: Number(value), unit: unitOf(value), line })
+  }
+  return { of: (label) => found.get(label) ?? null, fault: null }
+}
+
+/** The points of a block's table, real units, in the order of the file. */
+export const pointsOf = (block: Block, table: JcampRecord, file: string): Points => {
+  const faulty = (
+    line: number,
+    code: string,
+    what: string,
+    remedy = 'export the file again',
+    column?: number,
+  ): Points => ({
+    kind: 'faulty',
+    fault: { code, place: { at: file, line, ...(column === undefined ? {} : { column }) }, what, remedy },
+  })
+  const numbers = numbersOf(block, file)
+  if (numbers.fault) return { kind: 'faulty', fault: numbers.fault }
+  const [first, last, count] = [numbers.of('FIRSTX'), numbers.of('LASTX'), numbers.of('NPOINTS')]
+  const [xFactor, yFactor] = [numbers.of('XFACTOR')?.value ?? 1, numbers.of('YFACTOR')?.value ?? 1]
+  if (!(xFactor > 0) || !(yFactor > 0))
+    return faulty(table.line, 'bad-factor', `XFACTOR ${xFactor} and YFACTOR ${yFactor} must be above zero`)
+  if (count && !(Number.isInteger(count.value) && count.value > 0 && count.value <= 10_000_000))
+    return faulty(count.line, 'bad-count', `NPOINTS ${count.value} is no number of points`)
+  const form = table.value.replace(/\s/g, '').toUpperCase()
+  const pairs = form === '(XY..XY)'
+  if (!pairs && form !== '(X++(Y..Y))')
+    return faulty(table.line, 'unknown-table', `a table of the form "${table.value}" is not read`)
+  if (!count) return faulty(table.line, 'label-missing', 'NPOINTS is missing: nothing says whether the table is whole')
+  if (!pairs && (!first || !last))
+    return faulty(table.line, 'label-missing', 'FIRSTX or LASTX is missing: nothing says where the axis lies')
+  const raw = pairs ? pairsIn(table, file) : sequenceIn(table, file, first!, last!, count, xFactor)
+  if (raw.kind === 'faulty') return raw
+  const end = table.body.at(-1)?.number ?? table.line
+  if (raw.y.length !== count.value) {
+    return faulty(
+      end,
+      'point-count',
+      `the table holds ${raw.y.length} points where NPOINTS says ${count.value}`,
+      'the file was cut short or changed: export it again',
+    )
+  }
+  const x = pairs ? Float64Array.from(raw.x, (v) => v * xFactor) : axisOf(first!.value, last!.value, count.value)
+  const y = Float64Array.from(raw.y, (v) => v * yFactor)
+  for (const [written, i] of [
+    [first, 0],
+    [last, x.length - 1],
+  ] as const) {
+    if (pairs && written && Math.abs(written.value - x[i]!) > Math.max(written.unit, 1e-9 * Math.abs(x[i]!))) {
+      return faulty(
+        written.line,
+        'axis-contradiction',
+        `${i === 0 ? 'FIRSTX' : 'LASTX'} ${written.value} contradicts the table, where it is ${x[i]}`,
+      )
+    }
+  }
+  const delta = numbers.of('DELTAX')
+  const warnings: Fault[] = []
+  if (!pairs && delta && count.value > 1) {
+    const step = (last!.value - first!.value) / (count.value - 1)
+    const off = Math.abs(Math.abs(delta.value) - Math.abs(step))
+    if (off > Math.max(delta.unit, 1e-4 * Math.abs(step)) && off > (first!.unit + last!.unit) / (count.value - 1)) {
+      return faulty(
+        delta.line,
+        'axis-contradiction',
+        `DELTAX ${delta.value} contradicts (LASTX − FIRSTX)/(NPOINTS − 1) = ${step}`,
+      )
+    }
+    if (delta.value * step < 0)
+      warnings.push({
+        code: 'deltax-sign',
+        place: { at: file, line: delta.line },
+        what: `DELTAX ${delta.value} has the sign against the direction of the axis`,
+        remedy: 'nothing to do; the axis is taken from FIRSTX and LASTX',
+      })
+  }
+  return {
+    kind: 'points',
+    x,
+    y,
+    lines: raw.lines,
+    forms: raw.forms,
+    warnings: [...warnings, ...ordinateWarnings(y, yFactor, numbers, file)],
+  }
+}
+
+const axisOf = (first: number, last: number, count: number): Float64Array => {
+  const step = count > 1 ? (last - first) / (count - 1) : 0
+  return Float64Array.from({ length: count }, (_, i) =>
+    i === count - 1 ? last : Number((first + i * step).toPrecision(12)),
+  )
+}
+
+type RawPoints =
+  | {
+      readonly kind: 'raw'
+      readonly x: readonly number[]
+      readonly y: readonly number[]
+      readonly lines: readonly number[]
+      readonly forms: string
+    }
+  | { readonly kind: 'faulty'; readonly fault: Fault }
+
+const sequenceIn = (
+  table: JcampRecord,
+  file: string,
+  first: Written,
+  last: Written,
+  count: Written,
+  xFactor: number,
+): RawPoints => {
+  const faulty = (line: number, column: number, code: string, what: string): RawPoints => ({
+    kind: 'faulty',
+    fault: {
+      code,
+      place: { at: file, line, column },
+      what,
+      remedy: 'the file was damaged or changed: export it again',
+    },
+  })
+  const step = count.value > 1 ? (last.value - first.value) / (count.value - 1) : 0
+  const y: number[] = []
+  const lines: number[] = []
+  const forms = new Set<string>()
+  let check = false
+  for (const { number, text } of table.body) {
+    const decoded = decodeLine(text)
+    if (decoded.kind === 'wrong') return faulty(number, decoded.column, 'bad-ordinate', decoded.what)
+    const { x, xColumn, ordinates, columns, endsInDifference } = decoded.value
+    for (const form of decoded.value.forms) forms.add(form)
+    if (ordinates.length === 0)
+      return faulty(number, xColumn, 'no-ordinates', 'a line with an abscissa and no ordinate')
+    // the abscissa of a line with a check ordinate is that of the point it repeats
+    const at = check ? y.length - 1 : y.length
+    const expected = first.value + at * step
+    const written = text.trim().match(/^[+-]?\d*\.?\d*/)![0]
+    const tolerance = Math.max(unitOf(written === '' ? '1' : written) * xFactor, 0.05 * Math.abs(step)) * 1.000001
+    if (Math.abs(x * xFactor - expected) > tolerance) {
+      const what = `the line begins at X = ${x * xFactor} where FIRSTX, LASTX and NPOINTS put point ${at + 1} at ${Number(expected.toPrecision(10))}`
+      return faulty(number, xColumn, 'axis-contradiction', what)
+    }
+    if (check && ordinates[0] !== y.at(-1)) {
+      return faulty(
+        number,
+        columns[0]!,
+        'check-ordinate',
+        `the check ordinate is ${ordinates[0]}, the line before ended at ${y.at(-1)}`,
+      )
+    }
+    for (let k = check ? 1 : 0; k < ordinates.length; k++) {
+      y.push(ordinates[k]!)
+      lines.push(number)
+    }
+    if (y.length > count.value)
+      return faulty(number, 1, 'point-count', `the table holds more points than the ${count.value} of NPOINTS`)
+    check = endsInDifference
+  }
+  return { kind: 'raw', x: [], y, lines, forms: [...forms].join(' ') }
+}
+
+const pairsIn = (table: JcampRecord, file: string): RawPoints => {
+  const x: number[] = []
+  const y: number[] = []
+  const lines: number[] = []
+  for (const { number, text } of table.body) {
+    const groups = text
+      .trim()
+      .replace(/\s*,\s*/g, ',')
+      .replace(/\s*;\s*/g, ' ')
+      .trim()
+      .split(/\s+/)
+    const tokens = groups.flatMap((group) => group.split(','))
+    const wrong = tokens.find((token, i) => !PLAIN.test(token) && !(i % 2 === 1 && token === '?'))
+    const odd = tokens.length % 2 === 1 || groups.some((group) => group.includes(',') && group.split(',').length !== 2)
+    if (wrong !== undefined || odd) {
+      const what = wrong !== undefined ? `"${wrong}" is no number` : 'an abscissa without an ordinate'
+      return {
+        kind: 'faulty',
+        fault: {
+          code: 'bad-pair',
+          place: { at: file, line: number, column: Math.max(1, text.indexOf(wrong ?? tokens.at(-1)!) + 1) },
+          what,
+          remedy: 'export the file again',
+        },
+      }
+    }
+    for (let i = 0; i < tokens.length; i += 2) {
+      x.push(Number(tokens[i]))
+      y.push(tokens[i + 1] === '?' ? Number.NaN : Number(tokens[i + 1]))
+      lines.push(number)
+    }
+  }
+  return { kind: 'raw', x, y, lines, forms: 'AFFN pairs' }
+}
+
+/** FIRSTY, MINY, MAXY against the data. FIRSTY is found in published files in the table's own units too: both are accepted. */
+const ordinateWarnings = (y: Float64Array, yFactor: number, numbers: Numbers, file: string): readonly Fault[] => {
+  const seen = y.filter((v) => Number.isFinite(v))
+  const warnings: Fault[] = []
+  const compare = (label: string, actual: number, scales: readonly number[]) => {
+    const said = numbers.of(label)
+    if (!said || scales.some((s) => Math.abs(said.value * s - actual) <= Math.max(yFactor, said.unit * s) * 1.000001))
+      return
+    const what = `${label} is ${said.value}, the data say ${Number(actual.toPrecision(7))}`
+    warnings.push({
+      code: `${label.toLowerCase()}-contradiction`,
+      place: { at: file, line: said.line },
+      what,
+      remedy: 'nothing moves by it; the data were taken',
+    })
+  }
+  if (Number.isFinite(y[0])) compare('FIRSTY', y[0]!, [1, yFactor])
+  if (seen.length > 0) {
+    compare(
+      'MAXY',
+      seen.reduce((a, b) => Math.max(a, b)),
+      [1],
+    )
+    compare(
+      'MINY',
+      seen.reduce((a, b) => Math.min(a, b)),
+      [1],
+    )
+  }
+  return warnings
+}
