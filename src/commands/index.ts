@@ -27,10 +27,10 @@ export const runCommandLine = async (argv: readonly string[]): Promise<void> => 
     .exitOverride()
     .showHelpAfterError('(tendq --help lists the commands)')
   const asked = argv[2]
-  const names = asked !== undefined && asked in COMMANDS ? [asked] : Object.keys(COMMANDS)
-  for (const name of names) (await COMMANDS[name]!())(program)
-  for (const command of program.commands) command.exitOverride()
+  const names = asked !== undefined && Object.hasOwn(COMMANDS, asked) ? [asked] : Object.keys(COMMANDS)
   try {
+    for (const name of names) (await COMMANDS[name]!())(program)
+    for (const command of program.commands) command.exitOverride()
     await program.parseAsync([...argv])
   } catch (error) {
     exitWith(report(error))

@@ -18,13 +18,16 @@ export type RoomLoaded =
 
 /** Loads a configuration folder whole, or names every fault in it, those of the rules included. */
 export const loadRoom = (folder: string): RoomLoaded => {
-  const loaded = loadConfig(folder)
+  const loaded = loadConfig(folder, (definition) => {
+    const compilation = compileRule(definition)
+    return compilation.kind === 'refused' ? compilation.faults : []
+  })
   if (loaded.kind === 'refused') return loaded
   const { config } = loaded
-  const compiled = config.rules.map(compileRule)
-  const faults = compiled.flatMap((one) => (one.kind === 'refused' ? one.faults : []))
-  if (faults.length > 0) return { kind: 'refused', faults: faults as [Fault, ...Fault[]] }
-  const rules = compiled.flatMap((one) => (one.kind === 'compiled' ? [one.rule] : []))
+  const rules = config.rules.flatMap((definition) => {
+    const compilation = compileRule(definition)
+    return compilation.kind === 'compiled' ? [compilation.rule] : []
+  })
   return { kind: 'loaded', room: { config, rules, studyOf: (sample) => studyOf(config, sample) } }
 }
 
