@@ -6,8 +6,8 @@ type Place = Pick<Seed, 'positionPerCm' | 'widthPerCm'>
 
 /** Farthest that a band may wander from where the recipe has it; a substitution of ligands moves it less. cm⁻¹ */
 const WANDER_PER_CM = 2500
-/** Bands may not reach for each other's place: the share of the distance to the neighbour that each may go. */
-const SHARE_OF_GAP = 0.45
+/** The share of the distance to its neighbour that a band may go: once locked, bands never swap places. */
+const SHARE_OF_GAP = { search: 0.8, locked: 0.45 } as const
 /** A charge-transfer band beyond the window: how far off its centre may lie, where the search starts. cm⁻¹ */
 const FLANK = { near: 500, start: 5000, far: 20000, narrowest: 2000, width: 6000, widest: 16000 } as const
 
@@ -26,11 +26,11 @@ const nameOf = (bands: number, flank: boolean, background: readonly BackgroundTe
     ),
   ].join(' + ')
 
-const bandComponents = (places: readonly Place[]): readonly RecipeComponent[] => {
+const bandComponents = (places: readonly Place[], share: number): readonly RecipeComponent[] => {
   const sorted = places.toSorted((a, b) => a.positionPerCm - b.positionPerCm)
   return sorted.map(({ positionPerCm: p, widthPerCm: w }, k) => {
-    const below = k > 0 ? SHARE_OF_GAP * (p - sorted[k - 1]!.positionPerCm) : WANDER_PER_CM
-    const above = k + 1 < sorted.length ? SHARE_OF_GAP * (sorted[k + 1]!.positionPerCm - p) : WANDER_PER_CM
+    const below = k > 0 ? share * (p - sorted[k - 1]!.positionPerCm) : WANDER_PER_CM
+    const above = k + 1 < sorted.length ? share * (sorted[k + 1]!.positionPerCm - p) : WANDER_PER_CM
     return {
       shape: 'gaussian',
       kind: 'band',
@@ -48,6 +48,7 @@ export const makeRecipe = (
   flank: Place | boolean,
   background: readonly BackgroundTerm[],
   windowPerCm: readonly [number, number],
+  bounds: keyof typeof SHARE_OF_GAP,
 ): Recipe => {
   const edge = windowPerCm[1]
   const start = typeof flank === 'object' ? flank : { positionPerCm: edge + FLANK.start, widthPerCm: FLANK.width }
@@ -60,7 +61,7 @@ export const makeRecipe = (
   }
   return {
     name: nameOf(places.length, flank !== false, background),
-    components: [...bandComponents(places), ...(flank ? [tail] : [])],
+    components: [...bandComponents(places, SHARE_OF_GAP[bounds]), ...(flank ? [tail] : [])],
     background,
     windowPerCm,
   }

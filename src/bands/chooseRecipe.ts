@@ -1,7 +1,7 @@
 /**
  * The recipe of a sample, from its reference spectra together.
  *
- * Candidates: the k strongest places where bands may be (k = 1, 2, …), each with the backgrounds and with or without a
+ * Candidates: choices of the places where bands may be, the strongest always among them, each with the backgrounds and with or without a
  * charge-transfer flank. A band that only the residuals ask for may enter where the recipe then reaches the noise; else it is
  * one more admissible way to describe the spectra, and tells how far the positions depend on it. Score, summed over the spectra (Schwarz 1978):
  *   BIC = n′ ln(χ²/n) + p ln n′,  n′ = n/τ
@@ -15,7 +15,7 @@ import { findMisfit } from './misfit.ts'
 import { disorder, joinNeighbours, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
 import { apart, findSeeds, NARROWEST_PER_CM, type Seed, WIDEST_PER_CM } from './seeds.ts'
 import { componentAt } from './shapes.ts'
-import { type Solution, solveRecipe } from './solveRecipe.ts'
+import { ROUGH, type Solution, solveRecipe } from './solveRecipe.ts'
 import type { BackgroundTerm, BandHint, ChooseRecipe, Recipe, RecipeChoice } from './types.ts'
 import { correlationTime, type Uncertainty, uncertaintyOf } from './uncertainty.ts'
 
@@ -24,9 +24,13 @@ const MOST_SEEDS = 5
 /** A band below this share of the highest is structure, not a d–d band. */
 const LOWEST = 0.03
 /** Height and width of a band over the uncertainties of height and position, correlation counted: less, and it is a way to bend the curve. */
-const DETERMINED = 4
+const DETERMINED = { chosen: 3, admissible: 2 } as const
+/** So many places that the residuals ask for are tried. */
+const MOST_SUGGESTED = 3
 /** Recipes whose score is within this of the best describe the spectra acceptably. */
 const ADMISSIBLE = 10
+/** The same where residuals are structure, whose effective number of points is known to a factor of two only. */
+const ADMISSIBLE_WITH_MISFIT = 20
 const MOST_ADMISSIBLE = 6
 const NARROWEST_WINDOW_PER_CM = 3000
 
@@ -34,6 +38,8 @@ interface Trial {
   readonly recipe: Recipe
   readonly solutions: readonly Solution[]
   readonly chi2: number
+  /** Determined well enough to be chosen, not only to be admissible. */
+  readonly firm: boolean
 }
 
 interface Scored extends Trial {
@@ -76,23 +82,22 @@ const choose = (
 ): RecipeChoice => {
   const joined = full.map((points) => joinNeighbours(points, 0, JOINED))
   const seeds = placesOf(joined, hints)
-  const richest = makeRecipe(seeds.slice(0, bands ?? MOST_SEEDS), true, BACKGROUNDS[1]!, windowPerCm)
+  const richest = makeRecipe(seeds.slice(0, bands ?? MOST_SEEDS), true, BACKGROUNDS[1]!, windowPerCm, 'search')
   const misfit = findMisfit(richest, joined)
   const points = joined.map((selection) => reweigh(selection, misfit))
   const attempt: Attempt = (places, flank, background) =>
-    tryRecipe(makeRecipe(places, flank, background, windowPerCm), points)
+    tryRecipe(makeRecipe(places, flank, background, windowPerCm, 'search'), points)
   const empty = BACKGROUNDS.flatMap((background) => [false, true].map((flank) => attempt([], flank, background)))
-  const counts = bands === undefined ? seeds.slice(0, MOST_SEEDS).map((_, k) => k + 1) : [Math.min(bands, seeds.length)]
-  const seeded = counts
-    .filter((k) => k >= Math.min(hints.length, bands ?? hints.length))
-    .flatMap((k) => everyBackground(seeds.slice(0, k), attempt))
+  const seeded = subsets(seeds.slice(0, MOST_SEEDS), hints.length, bands).flatMap((places) =>
+    everyBackground(places, attempt),
+  )
   const seen = [...empty, ...seeded].filter((trial) => trial !== null)
   const suggested = suggestions(seen, points, bands, attempt)
   const scored = score([...seen, ...suggested], points)
-  const mayBeChosen = ({ recipe }: Scored) =>
+  const mayBeChosen = (trial: Scored) =>
     bands === undefined
-      ? !suggested.some((trial) => trial.recipe === recipe) || findMisfit(recipe, joined) === 0
-      : bandCount(recipe) === bands
+      ? trial.firm && (isSeen(trial, seeds) || findMisfit(trial.recipe, joined) === 0)
+      : bandCount(trial.recipe) === bands
   const best = scored.toSorted((a, b) => a.score - b.score).find(mayBeChosen)
   if (!best) return none(spectra, `No recipe of ${bands ?? 'any number of'} bands describes the spectra.`)
   if (bandCount(best.recipe) === 0)
@@ -102,7 +107,9 @@ const choose = (
       (other) => other !== best && bandCount(other.recipe) > 0 && bandCount(other.recipe) >= bandCount(best.recipe),
     )
     .sort((a, b) => a.score - b.score)
-  const close = others.filter((other) => other.score < best.score + ADMISSIBLE).slice(0, MOST_ADMISSIBLE)
+  const close = others
+    .filter((other) => other.score < best.score + (misfit > 0 ? ADMISSIBLE_WITH_MISFIT : ADMISSIBLE))
+    .slice(0, MOST_ADMISSIBLE)
   const recipe = settle(best, full)
   return { kind: 'chosen', recipe, admissible: [recipe, ...close.map((other) => settle(other, joined))] }
 }
@@ -120,14 +127,39 @@ const suggestions = (
   let found: readonly Trial[] = []
   for (let round = 0; round < (bands ?? 1); round++) {
     const best = bestOf(score([...seen, ...found], points))
-    const place = best && bandCount(best.recipe) > 0 ? missingBand(best, points) : null
-    if (!best || !place || bandCount(best.recipe) > (bands ?? Infinity)) break
-    found = [...found, ...everyBackground([...bandPlaces(best), place], attempt).filter((trial) => trial !== null)]
+    if (!best || bandCount(best.recipe) === 0 || bandCount(best.recipe) > (bands ?? Infinity)) break
+    const tried = missingBands(best, points)
+      .slice(0, MOST_SUGGESTED)
+      .flatMap((place) => everyBackground([...bandPlaces(best), place], attempt))
+    found = [...found, ...tried.filter((trial) => trial !== null)]
   }
   return found
 }
 
 const bandCount = ({ components }: Recipe): number => components.filter(({ kind }) => kind === 'band').length
+
+/** Every band has a place of its own in the curve's second derivative. */
+const isSeen = (trial: Trial, seeds: readonly Seed[]): boolean => {
+  let left = seeds
+  return bandPlaces(trial).every(({ positionPerCm }) => {
+    const distance = (seed: Seed) => Math.abs(seed.positionPerCm - positionPerCm)
+    const own = left.toSorted((a, b) => distance(a) - distance(b))[0]
+    left = left.filter((seed) => seed !== own)
+    return own !== undefined && distance(own) < NARROWEST_PER_CM
+  })
+}
+
+/** Every choice of places that holds the hinted ones, or else the strongest; of `count` places where that is given. */
+const subsets = (seeds: readonly Seed[], hinted: number, count: number | undefined): readonly (readonly Seed[])[] => {
+  const certain = seeds.slice(0, Math.min(count ?? Infinity, Math.max(1, hinted)))
+  const rest = seeds.slice(certain.length)
+  const choices = rest.reduce<readonly (readonly Seed[])[]>(
+    (sets, seed) => [...sets, ...sets.map((set) => [...set, seed])],
+    certain.length > 0 ? [certain] : [],
+  )
+  const wanted = Math.min(count ?? Infinity, seeds.length)
+  return count === undefined ? choices : choices.filter((set) => set.length === wanted)
+}
 
 /** Hinted places first, then what the curves show, strongest first. */
 const placesOf = (points: readonly Selection[], hints: readonly BandHint[]): readonly Seed[] => {
@@ -148,19 +180,24 @@ const everyBackground = (places: readonly Place[], attempt: Attempt): readonly (
 const tryRecipe = (recipe: Recipe, points: readonly Selection[]): Trial | null => {
   const solutions: Solution[] = []
   for (const selection of points) {
-    const solution = solveRecipe(recipe, selection)
+    const solution = solveRecipe(recipe, selection, ROUGH)
     if (!solution) return null
     solutions.push(solution)
   }
   const uncertainties = solutions.map((solution) => uncertaintyOf(recipe, solution))
-  const sensible = recipe.components.every((component, k) => {
-    const times = solutions.filter((solution, s) => isSensible(recipe, solution, uncertainties[s]!, component.kind, k))
-    return 2 * times.length >= solutions.length
-  })
+  const sensible = (determined: number) =>
+    recipe.components.every((component, k) => {
+      const times = solutions.filter((solution, s) =>
+        isSensible(recipe, solution, uncertainties[s]!, component.kind, k, determined),
+      )
+      return 2 * times.length >= solutions.length
+    })
   const used = recipe.background.every((_, k) =>
     solutions.some(({ at }) => at.coefficients[recipe.components.length + k]! !== 0),
   )
-  return sensible && used ? { recipe, solutions, chi2: solutions.reduce((sum, { chi2 }) => sum + chi2, 0) } : null
+  if (!used || !sensible(DETERMINED.admissible)) return null
+  const chi2 = solutions.reduce((sum, solution) => sum + solution.chi2, 0)
+  return { recipe, solutions, chi2, firm: sensible(DETERMINED.chosen) }
 }
 
 const isSensible = (
@@ -169,6 +206,7 @@ const isSensible = (
   uncertainty: Uncertainty | null,
   kind: 'band' | 'flank',
   k: number,
+  limit: number,
 ): boolean => {
   const height = at.coefficients[k]!
   if (kind === 'flank') return height > 0
@@ -179,7 +217,7 @@ const isSensible = (
   const inside = position > from - width / 4 && position < to + width / 4
   const heightVariance = uncertainty?.ofCoefficient(k) ?? Infinity
   const positionVariance = uncertainty?.ofParameter(2 * k, 2 * k) ?? Infinity
-  const determined = height > DETERMINED * Math.sqrt(heightVariance) && width > DETERMINED * Math.sqrt(positionVariance)
+  const determined = height > limit * Math.sqrt(heightVariance) && width > limit * Math.sqrt(positionVariance)
   const shaped = width > NARROWEST_PER_CM && width < WIDEST_PER_CM
   return inside && shaped && determined && height > LOWEST * Math.max(...heights)
 }
@@ -217,19 +255,16 @@ const placeOf = ({ recipe, solutions }: Trial, k: number): Place => {
 const bandPlaces = (trial: Trial): readonly Place[] =>
   trial.recipe.components.flatMap(({ kind }, k) => (kind === 'band' ? [placeOf(trial, k)] : []))
 
-/** Where the residuals of all spectra, smoothed over a narrow band, rise highest above the curve. */
-const missingBand = (trial: Trial, points: readonly Selection[]): Place | null => {
+/** Where the residuals, smoothed over less than a band, rise above the curve; highest first. */
+const missingBands = (trial: Trial, points: readonly Selection[]): readonly Place[] => {
   const residual = points.map((selection, s) => ({
     ...selection,
     y: trial.solutions[s]!.at.residuals.map((r, i) => r / selection.weight[i]!),
   }))
   const places = bandPlaces(trial)
-  const free = residual
-    .flatMap((selection) => findSeeds(selection))
-    .filter((seed) =>
-      places.every(({ positionPerCm }) => Math.abs(positionPerCm - seed.positionPerCm) > NARROWEST_PER_CM / 2),
-    )
-  return free.length > 0 ? free.reduce((best, seed) => (seed.height > best.height ? seed : best)) : null
+  const isFree = (seed: Seed) =>
+    places.every(({ positionPerCm }) => Math.abs(positionPerCm - seed.positionPerCm) > NARROWEST_PER_CM / 2)
+  return apart(residual.flatMap((selection) => findSeeds(selection)).sort((a, b) => b.height - a.height)).filter(isFree)
 }
 
 /** The recipe with its places as found, and the misfit it has. */
@@ -240,6 +275,7 @@ const settle = (trial: Trial, points: readonly Selection[]): Recipe => {
     flank < 0 ? false : placeOf(trial, flank),
     trial.recipe.background,
     trial.recipe.windowPerCm,
+    'locked',
   )
   const misfit = findMisfit(settled, points)
   return misfit > 0 ? { ...settled, misfit } : settled

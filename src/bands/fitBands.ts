@@ -3,7 +3,7 @@ import type { Flag, Spectrum } from '../spectrum/types.ts'
 import { type CurveMaximum, curveMaximum } from './maxima.ts'
 import { disorder, joinNeighbours, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
 import { componentAt } from './shapes.ts'
-import { type Solution, solveRecipe } from './solveRecipe.ts'
+import { ROUGH, type Solution, solveRecipe } from './solveRecipe.ts'
 import type { BandFit, FitBands, FittedComponent, Recipe } from './types.ts'
 import { type Uncertainty, uncertaintyOf } from './uncertainty.ts'
 
@@ -209,7 +209,7 @@ const modelSpreads = (recipe: Recipe, admissible: readonly Recipe[], points: Sel
   const others = admissible.filter((other) => JSON.stringify(other) !== JSON.stringify(recipe))
   const centres = (other: Recipe) => {
     const joined = joinNeighbours(points, other.misfit ?? 0, JOINED)
-    const solution = solveRecipe(other, joined)
+    const solution = solveRecipe(other, joined, ROUGH)
     return solution
       ? other.components.flatMap(({ kind }, k) =>
           kind === 'band' && solution.at.coefficients[k]! > 0 ? [solution.parameters[2 * k]!] : [],
@@ -217,7 +217,7 @@ const modelSpreads = (recipe: Recipe, admissible: readonly Recipe[], points: Sel
       : []
   }
   if (others.length === 0) return recipe.components.map(() => null)
-  const own = solveRecipe(recipe, joinNeighbours(points, recipe.misfit ?? 0, JOINED))
+  const own = solveRecipe(recipe, joinNeighbours(points, recipe.misfit ?? 0, JOINED), ROUGH)
   const rivals = others.map(centres)
   return recipe.components.map(({ kind }, k) => {
     if (kind !== 'band' || !own) return null

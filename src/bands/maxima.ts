@@ -14,6 +14,8 @@ export interface CurveMaximum {
 }
 
 const DEGREE = 4
+/** Half the stretch a maximum is read from, at most: a broad component may hide a narrower top. cm⁻¹ */
+const WIDEST_REACH_PER_CM = 1000
 
 /** Vertex nearest v = 0 with |v| ≤ 1; null where the polynomial has no maximum there. */
 const vertex = (c: Float64Array): number | null => {
@@ -51,8 +53,8 @@ const turningPoints = (points: Points, centre: number, range: number, reach: num
 
 /** The curve's maximum nearest `positionPerCm`, within 0.6 widths of it; null where it has none or lies at the end of the data. */
 export const curveMaximum = (points: Points, positionPerCm: number, widthPerCm: number): CurveMaximum | null => {
-  const reach = 0.3 * widthPerCm
-  const turns = turningPoints(points, positionPerCm, 0.6 * widthPerCm, 0.15 * widthPerCm)
+  const reach = Math.min(WIDEST_REACH_PER_CM, 0.3 * widthPerCm)
+  const turns = turningPoints(points, positionPerCm, 0.6 * widthPerCm, reach / 2)
   if (turns.length === 0) return null
   let at = turns.reduce((best, t) => (Math.abs(t - positionPerCm) < Math.abs(best - positionPerCm) ? t : best))
   for (let round = 0; round < 8; round++) {

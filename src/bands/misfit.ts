@@ -3,7 +3,7 @@
  * who find the variance between laboratories so. Residuals and weights depend on each other: a few rounds.
  */
 import { reweigh, type Selection } from './points.ts'
-import { solveRecipe } from './solveRecipe.ts'
+import { ROUGH, solveRecipe } from './solveRecipe.ts'
 import type { Recipe } from './types.ts'
 
 const ROUNDS = 3
@@ -17,7 +17,7 @@ export const findMisfit = (recipe: Recipe, spectra: readonly Selection[]): numbe
     let square = 0
     for (const points of spectra) {
       const weighted = reweigh(points, misfit)
-      const solution = solveRecipe(recipe, weighted)
+      const solution = solveRecipe(recipe, weighted, ROUGH)
       if (!solution) return misfit
       const freedom = points.x.length - 3 * recipe.components.length - recipe.background.length
       const variances = solution.at.residuals.map((r, i) => (r / weighted.weight[i]!) ** 2)

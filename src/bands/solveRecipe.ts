@@ -12,14 +12,16 @@ export interface Solution extends Omit<Minimum, 'at'> {
 }
 
 const APPROACH: Tolerances = { relativeChange: 1e-3, gradient: 1e-4, step: 1e-5, iterations: 40 }
+/** Enough to tell recipes apart: a change of 10⁻⁶ of χ² is far below a point of score. */
+export const ROUGH: Tolerances = { relativeChange: 1e-6, gradient: 1e-6, step: 1e-7, iterations: 40 }
 const FINAL: Tolerances = { relativeChange: 1e-9, gradient: 1e-9, step: 1e-9, iterations: 100 }
 const THINNED_FROM = 240
 const THINNING = 4
 
-/** Null where the model can't be evaluated at all. `start` defaults to the recipe's positions and widths. */
-export const solveRecipe = (recipe: Recipe, points: Points, start?: Float64Array): Solution | null => {
+/** Null where the model can't be evaluated at all. */
+export const solveRecipe = (recipe: Recipe, points: Points, tolerances = FINAL): Solution | null => {
   const space = searchSpace(recipe)
-  let from = start ?? space.start
+  let from = space.start
   let iterations = 0
   if (points.x.length >= THINNED_FROM) {
     const approach = minimise(separable(recipe, thin(points, THINNING)), from, space.box, APPROACH)
@@ -28,7 +30,7 @@ export const solveRecipe = (recipe: Recipe, points: Points, start?: Float64Array
       iterations = approach.iterations
     }
   }
-  const found = minimise(separable(recipe, points), from, space.box, FINAL)
+  const found = minimise(separable(recipe, points), from, space.box, tolerances)
   // The residuals of the last accepted evaluation may have been overwritten by a refused trial: evaluate once more.
   const at = found && separable(recipe, points)(found.parameters)
   if (!found || !at) return null
