@@ -7,6 +7,7 @@ import type { AxisUnit, Medium, OrdinateKind, RawSpectrum, Reading, ReadingHints
 import { prepareSpectrum } from '../spectrum/index.ts'
 import type { PrepareOptions, Spectrum } from '../spectrum/types.ts'
 import { exitWith, printFaults, printJson, printLine, usageFault } from './print.ts'
+import { printable } from './printable.ts'
 
 interface InspectOptions {
   readonly json?: true
@@ -153,10 +154,10 @@ const describe = (raw: RawSpectrum, spectrum: Spectrum | null): readonly string[
     raw.temperatureC === null ? null : `${raw.temperatureC} degC`,
     raw.concentrationMolPerL === null ? null : `${raw.concentrationMolPerL} mol/L`,
   ].filter((fact) => fact !== null)
-  const head = `spectrum ${raw.index + 1}: ${raw.sample === null ? 'no sample named in the file' : `sample ${raw.sample}`}, ${time}`
+  const head = `spectrum ${raw.index + 1}: ${raw.sample === null ? 'no sample named in the file' : `sample ${printable(raw.sample)}`}, ${time}`
   const lines = [
     head,
-    ...(raw.title === null ? [] : [`  title       ${raw.title}`]),
+    ...(raw.title === null ? [] : [`  title       ${printable(raw.title)}`]),
     `  axis        ${raw.x.length} points, ${raw.x[0]} to ${raw.x.at(-1)} ${raw.xUnit}${spectrum === null ? '' : inVacuum(raw, spectrum)}`,
     `  ordinate    ${raw.yKind}, ${short(low)} to ${short(high)}`,
     ...(facts.length > 0 ? [`  conditions  ${facts.join(', ')}`] : []),
