@@ -40,7 +40,8 @@ const tridiagonalise = (a: Float64Array, n: number, diagonal: Float64Array): voi
       norm2 += v[i]! * v[i]!
     }
     const tail = norm2 - v[k + 1]! * v[k + 1]!
-    if (tail === 0) {
+    // nothing to reduce; squares near the underflow count as nothing
+    if (tail <= 0 || norm2 < 1e-290) {
       offDiagonal[k] = v[k + 1]!
       continue
     }
@@ -71,12 +72,15 @@ const tridiagonalise = (a: Float64Array, n: number, diagonal: Float64Array): voi
 }
 
 const implicitQl = (d: Float64Array, e: Float64Array, n: number): void => {
+  let norm = 0
+  for (let i = 0; i < n; i += 1) norm = Math.max(norm, Math.abs(d[i]!) + Math.abs(e[i]!))
+  const negligible = 0.01 * Number.EPSILON * norm
   for (let l = 0; l < n; l += 1) {
     for (let sweep = 0; sweep < 60; sweep += 1) {
       let m = l
       while (m < n - 1) {
         const size = Math.abs(d[m]!) + Math.abs(d[m + 1]!)
-        if (Math.abs(e[m]!) <= Number.EPSILON * size) break
+        if (Math.abs(e[m]!) <= Math.max(Number.EPSILON * size, negligible)) break
         m += 1
       }
       if (m === l) break
