@@ -177,20 +177,30 @@ const symbol = (label: string): string => {
   return rest === '' ? raised : `${raised}<tspan font-size="8" dy="2.5">${rest}</tspan><tspan dy="-2.5">&#8203;</tspan>`
 }
 
-/** Names at the right end, pushed apart where levels lie close, each tied to its level by a hair line. */
-const names = (last: readonly Level[], { y, top }: Axes): readonly string[] => {
-  const ground = last[0]!.multiplicity
-  const shown = last
-    .filter(({ energyPerCm }) => energyPerCm <= top)
-    .map((level) => ({ level, wanted: y(level.energyPerCm) }))
-  const places = spread(shown.map(({ wanted }) => wanted))
-  return shown.map(({ level, wanted }, i) => {
+/** Names at the right end, allowed and forbidden in a column each, pushed apart where levels lie close. */
+const names = (last: readonly Level[], axes: Axes): readonly string[] => {
+  const shown = last.filter(({ energyPerCm }) => energyPerCm <= axes.top)
+  const isAllowed = ({ multiplicity }: Level): boolean => multiplicity === last[0]!.multiplicity
+  return [
+    ...column(shown.filter(isAllowed), axes, RIGHT + 20, true),
+    ...column(
+      shown.filter((level) => !isAllowed(level)),
+      axes,
+      RIGHT + 64,
+      false,
+    ),
+  ]
+}
+
+/** One column of names, each tied to its level by a hair line. */
+const column = (shown: readonly Level[], { y }: Axes, left: number, strong: boolean): readonly string[] => {
+  const places = spread(shown.map(({ energyPerCm }) => y(energyPerCm)))
+  return shown.map(({ label, energyPerCm }, i) => {
     const place = places[i]!
-    const same = level.multiplicity === ground
-    const column = same ? 0 : 44
+    const weight = strong ? ' font-weight="bold"' : ''
     return [
-      `<path d="M${RIGHT} ${at(wanted)}L${RIGHT + 14} ${at(place)}H${RIGHT + 18 + column}" stroke="${GREY}" stroke-width="0.5" fill="none"/>`,
-      `<text x="${RIGHT + 20 + column}" y="${at(place + 4)}"${same ? ' font-weight="bold"' : ''}>${symbol(level.label)}</text>`,
+      `<path d="M${RIGHT} ${at(y(energyPerCm))}L${RIGHT + 14} ${at(place)}H${left - 2}" stroke="${GREY}" stroke-width="0.5" fill="none"/>`,
+      `<text x="${left}" y="${at(place + 4)}"${weight}>${symbol(label)}</text>`,
     ].join('')
   })
 }
