@@ -10,6 +10,7 @@ export const notesOf = (config: Config): readonly string[] => [
   ...(config.web?.token ? secretNotes('the token of the web page', config.web.token) : []),
   ...config.studies.flatMap((study) => studyNotes(config, study)),
   ...ruleNotes(config),
+  'rule common-change: this version does not judge it yet; samples that move together each ring for themselves',
   ...config.species
     .filter(({ name }) => !config.studies.some(({ species }) => species === name))
     .map(({ name }) => `species ${name}: no study is of it`),

@@ -91,8 +91,11 @@ const unknownSample = (sample: string, db: ReturnType<typeof openStoreReadOnly>)
 const withTypes = (row: HistoryRow) => ({
   ...row,
   excluded: row.excluded === 1,
-  flags: typeof row.flags === 'string' ? (JSON.parse(row.flags) as string[]) : [],
+  flags: flagsOf(row),
 })
+
+const flagsOf = ({ flags }: HistoryRow): readonly string[] =>
+  typeof flags === 'string' ? (JSON.parse(flags) as string[]) : []
 
 const printCsv = (rows: readonly HistoryRow[]): void => {
   const [first] = rows
@@ -110,9 +113,9 @@ const printTable = (rows: readonly HistoryRow[]): void => {
     `${'measured at'.padEnd(20)} ${'instrument'.padEnd(10)} ${'ν1 cm⁻¹'.padStart(9)} ${'ν2 cm⁻¹'.padStart(9)} ${'Δ cm⁻¹'.padStart(9)} ${'u'.padStart(6)} ${'B cm⁻¹'.padStart(8)} ${'u'.padStart(5)}  judgement  flags`,
   )
   for (const row of rows) {
-    const flags = row.excluded === 1 ? `excluded ${row.flags}` : row.flags
+    const flags = [...(row.excluded === 1 ? ['excluded'] : []), ...flagsOf(row)].join(', ')
     printLine(
-      `${String(row.measured_at).padEnd(20)} ${printable(String(row.instrument)).padEnd(10)} ${number(row.nu1_cm1, 1, 9)} ${number(row.nu2_cm1, 1, 9)} ${number(row.delta_cm1, 1, 9)} ${number(row.u_delta_cm1, 1, 6)} ${number(row.b_cm1, 1, 8)} ${number(row.u_b_cm1, 1, 5)}  ${String(row.judgement ?? '–').padEnd(9)}  ${flags === '[]' ? '' : String(flags ?? '')}`.trimEnd(),
+      `${String(row.measured_at).padEnd(20)} ${printable(String(row.instrument)).padEnd(10)} ${number(row.nu1_cm1, 1, 9)} ${number(row.nu2_cm1, 1, 9)} ${number(row.delta_cm1, 1, 9)} ${number(row.u_delta_cm1, 1, 6)} ${number(row.b_cm1, 1, 8)} ${number(row.u_b_cm1, 1, 5)}  ${String(row.judgement ?? '–').padEnd(9)}  ${flags}`.trimEnd(),
     )
   }
 }

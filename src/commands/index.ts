@@ -21,6 +21,8 @@ const COMMANDS: Readonly<Record<string, () => Promise<AddCommand>>> = {
 
 /** Runs one command; every failure ends as a sentence on stderr and an exit code of the contract. */
 export const runCommandLine = async (argv: readonly string[]): Promise<void> => {
+  // `tendq history X | head` closes the pipe when it has seen enough: no fault of anybody
+  process.stdout.on('error', (error: NodeJS.ErrnoException) => process.exit(error.code === 'EPIPE' ? EXIT.ok : EXIT.io))
   const program = new Command('tendq')
     .description('Takes in exported spectra, fits the d-d bands, keeps the history, raises alarms.')
     .version(ENGINE)

@@ -2,10 +2,11 @@ import { stepAlarm } from '../alarms/index.ts'
 import type { CompiledRule, Judgement } from '../rules/types.ts'
 import type { Window } from '../series/types.ts'
 import type { AlarmKey, StoredAlarm } from '../store/alarms.ts'
+import type { RuleSubject } from '../store/judgements.ts'
 import type { JustKept } from './judge.ts'
 import { addLetter } from './letter.ts'
 import type { Stations } from './pipeline.ts'
-import { messageOf, sampleFacts, type UntoldFacts } from './tell.ts'
+import { factsOf, messageOf, type UntoldFacts } from './tell.ts'
 
 export interface Judged {
   readonly rule: CompiledRule
@@ -14,18 +15,25 @@ export interface Judged {
   readonly occasion: number
   readonly window: Window
   readonly kept: JustKept
+  readonly about: About
 }
 
-/** Moves the alarm of a sample by one judgement: `persist` occasions in a row ring it, one clears it. */
+/** Whom an alarm is about. */
+export interface About {
+  readonly of: 'sample' | 'instrument'
+  readonly subject: string
+}
+
+/** Moves the alarm of a sample or instrument by one judgement: `persist` occasions in a row ring it, one clears it. */
 export const advanceAlarm = (judged: Judged, stations: Stations): void => {
-  const { rule, judgement, occasion, kept } = judged
+  const { rule, judgement, occasion, kept, about } = judged
   const { store } = stations
   const { outcome } = judgement
   if (outcome.kind === 'undecided') return
   const { name, persist } = rule.definition
-  const key: AlarmKey = { rule: name, of: 'sample', subject: kept.subject.sample }
+  const key: AlarmKey = { rule: name, ...about }
   const on = kept.subject.instrument.name
-  const of = { rule: name, sample: kept.subject.sample, instrument: on }
+  const of = { rule: name, sample: about.of === 'sample' ? about.subject : null, instrument: on }
   const before = store.alarms.watch(key)
   const row = outcome.kind === 'rings' ? [occasion, ...ringingBefore(of, occasion, stations)] : []
   const was = before[on] ?? false
@@ -35,15 +43,11 @@ export const advanceAlarm = (judged: Judged, stations: Stations): void => {
     outcome.kind === 'rings' ? was || row.length >= persist : outcome.kind === 'clears' && !isLate ? false : was
   if (is !== was) store.alarms.setWatch(key, on, is)
   const isActive = Object.entries({ ...before, [on]: is }).some(([, active]) => active)
-  moveAlarm(key, isActive, row.length, rule, stations, () => sampleFacts(judged, row, stations))
+  moveAlarm(key, isActive, row.length, rule, stations, () => factsOf(judged, row, stations))
 }
 
 /** Occasions in a row, before this one, on which the rule rang; undecided ones neither add nor break. Newest first. */
-const ringingBefore = (
-  of: { rule: string; sample: string; instrument: string },
-  occasion: number,
-  { store }: Stations,
-): readonly number[] => {
+const ringingBefore = (of: RuleSubject, occasion: number, { store }: Stations): readonly number[] => {
   const decided = store.judgements.decidedBefore(of, occasion, LONGEST_ROW)
   const broken = decided.findIndex(({ outcome }) => outcome !== 'rings')
   return (broken === -1 ? decided : decided.slice(0, broken)).map((one) => one.occasion)

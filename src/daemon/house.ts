@@ -4,6 +4,7 @@ import { EXIT, FaultError, sayFault } from '../fault.ts'
 import { startIntake } from '../intake/index.ts'
 import type { DropFolder, Intake, IntakeEvent, IntakeOptions, IntakePorts } from '../intake/types.ts'
 import { holdDataFolder, openStore, storeOn } from '../store/index.ts'
+import { escalate } from './escalate.ts'
 import { singleFlight } from './flight.ts'
 import type { DaemonNote } from './health.ts'
 import { judgeOverdueSamples } from './overdue.ts'
@@ -72,7 +73,10 @@ export const openHouse = (configFolder: string, log: Logger) => {
   })
 
   const judgeTimes = (): Promise<boolean> =>
-    minding('overdue', 'overdue samples could not be judged', () => judgeOverdueSamples(stations))
+    minding('overdue', 'what the clock decides could not be judged', () => {
+      judgeOverdueSamples(stations)
+      escalate(stations)
+    })
 
   const note = (): void => {
     const waiting = intake?.waiting() ?? []

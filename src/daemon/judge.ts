@@ -6,7 +6,7 @@ import type { CompiledRule, Judgement, Outcome } from '../rules/types.ts'
 import type { Standing, Window } from '../series/types.ts'
 import type { StoredArrival } from '../store/arrivals.ts'
 import type { JudgedAs } from '../store/judgements.ts'
-import { advanceAlarm } from './alarm.ts'
+import { type About, advanceAlarm } from './alarm.ts'
 import type { Subject } from './context.ts'
 import { occasionsOfRows } from './occasions.ts'
 import type { Stations } from './pipeline.ts'
@@ -26,33 +26,73 @@ export interface JustKept {
 /** Longest history that a chart looks back on. */
 const LONGEST_LOOK_BACK = 10_000
 
-/** Every rule of the sample on this spectrum, inside the transaction that keeps it. */
+/** Every rule that concerns this spectrum's sample or instrument, inside the transaction that keeps it. */
 export const judge = (kept: JustKept, stations: Stations): void => {
-  const rules = stations.room().rules.filter((rule) => concerns(rule, kept.subject))
-  if (rules.length === 0) return
-  const window = windowOf(kept, rules, stations)
-  const undecided: string[] = []
-  for (const rule of rules.filter((rule) => rule.definition.condition.kind !== 'always')) {
-    const judgement = settle(rule, window, kept, stations)
-    const { outcome } = judgement
-    if (outcome.kind === 'undecided' && outcome.because === 'missing') undecided.push(rule.definition.name)
-  }
-  const standing = { ...standingOf(kept), undecided }
-  for (const rule of rules.filter((rule) => rule.definition.condition.kind === 'always'))
-    settle(rule, { ...window, standing }, kept, stations)
+  const rules = stations.room().rules.filter(({ definition }) => ruleCovers(definition, kept.subject.study.name))
+  judgeSample(
+    rules.filter(({ definition }) => definition.of === 'sample'),
+    kept,
+    stations,
+  )
+  judgeInstrument(
+    rules.filter(({ definition }) => definition.of === 'instrument'),
+    kept,
+    stations,
+  )
 }
 
-const concerns = ({ definition }: CompiledRule, { study }: Subject): boolean =>
-  definition.of === 'sample' &&
-  (definition.condition.kind === 'expression' ||
-    definition.condition.kind === 'chart' ||
-    (definition.condition.kind === 'always' && definition.condition.rule !== 'common-change')) &&
-  ruleCovers(definition, study.name)
+const judgeSample = (rules: readonly CompiledRule[], kept: JustKept, stations: Stations): void => {
+  const measured = rules.filter(isMeasured)
+  const window = windowOf(kept, measured, stations)
+  const about = { of: 'sample', subject: kept.subject.sample } as const
+  const undecided = measured.flatMap((rule) => {
+    const { outcome } = settle(rule, window, kept, about, stations)
+    return outcome.kind === 'undecided' && outcome.because === 'missing' ? [rule.definition.name] : []
+  })
+  const standing = { ...standingOf(kept), undecided }
+  for (const rule of rules.filter(isAlwaysOfSample)) settle(rule, { ...window, standing }, kept, about, stations)
+}
+
+const judgeInstrument = (rules: readonly CompiledRule[], kept: JustKept, stations: Stations): void => {
+  const measured = rules.filter(isMeasured)
+  if (measured.length === 0) return
+  const window = instrumentWindow(kept, measured, stations)
+  const about = { of: 'instrument', subject: kept.subject.instrument.name } as const
+  for (const rule of measured) settle(rule, window, kept, about, stations)
+}
+
+const isMeasured = ({ definition: { condition } }: CompiledRule): boolean =>
+  condition.kind === 'expression' || condition.kind === 'chart'
+
+const isAlwaysOfSample = ({ definition: { condition } }: CompiledRule): boolean =>
+  condition.kind === 'always' && condition.rule !== 'common-change'
+
+const lookBackOf = (rules: readonly CompiledRule[]): number =>
+  Math.min(LONGEST_LOOK_BACK, Math.max(1, ...rules.map((rule) => rule.lookBack)))
+
+/** Everything that the instrument measured of late. It has no reference: what it measures differs from sample to sample. */
+const instrumentWindow = (kept: JustKept, rules: readonly CompiledRule[], { store }: Stations): Window => {
+  const of = { instrument: kept.subject.instrument.name, engine: ENGINE }
+  const rows = store.analyses.windowOfInstrument(of, kept.identity.measuredAt, lookBackOf(rules))
+  return {
+    occasions: occasionsOfRows(
+      rows,
+      { ...kept.subject, study: { ...kept.subject.study, replicatesWithinMs: null } },
+      store,
+    ),
+    reference: { kind: 'refused', why: 'an instrument has no reference, its samples have' },
+    began: null,
+    temperatureC: null,
+    pathMm: null,
+    concentrationMolPerL: null,
+    medium: kept.subject.context.prepare.medium,
+  }
+}
 
 const windowOf = (kept: JustKept, rules: readonly CompiledRule[], stations: Stations): Window => {
   const { store } = stations
   const { sample, instrument, study } = kept.subject
-  const lookBack = Math.min(LONGEST_LOOK_BACK, Math.max(1, ...rules.map((rule) => rule.lookBack)))
+  const lookBack = lookBackOf(rules)
   const of = { sample, instrument: instrument.name, recipe: kept.recipe, engine: ENGINE }
   // an occasion may hold several replicates: look back on more spectra than occasions
   const rows = store.analyses.window(
@@ -77,7 +117,7 @@ const standingOf = ({ analysis, subject }: JustKept): Omit<Standing, 'undecided'
 })
 
 /** Judges, writes down the judgement, and moves the alarm. */
-const settle = (rule: CompiledRule, window: Window, kept: JustKept, stations: Stations): Judgement => {
+const settle = (rule: CompiledRule, window: Window, kept: JustKept, about: About, stations: Stations): Judgement => {
   const { store, now } = stations
   const judgement = rule.judge(window)
   const occasion = window.occasions.at(-1)?.at ?? kept.identity.measuredAt
@@ -90,7 +130,7 @@ const settle = (rule: CompiledRule, window: Window, kept: JustKept, stations: St
     evidence: judgement.evidence,
     at: now(),
   })
-  advanceAlarm({ rule, judgement, occasion, window, kept }, stations)
+  advanceAlarm({ rule, judgement, occasion, window, kept, about }, stations)
   return judgement
 }
 

@@ -3,12 +3,12 @@ import { composeLetter } from '../mail/index.ts'
 import type { AlarmFacts } from '../mail/types.ts'
 import type { Stations } from './pipeline.ts'
 
-/** Adds a letter to the people of the study, or to the room's keeper where there is none. Inside the outcome's transaction. */
-export const addLetter = (facts: AlarmFacts, { store, room, now }: Stations): void => {
+/** Adds a letter to the people of the study, or to the room's keeper where there is none, or to `to`. Inside the outcome's transaction. */
+export const addLetter = (facts: AlarmFacts, { store, room, now }: Stations, to?: readonly string[]): void => {
   const { config } = room()
   if (config.mail === null) return
   const study = config.studies.find(({ name }) => name === facts.study)
-  const recipients = study !== undefined && study.tell.length > 0 ? study.tell : config.keeper
+  const recipients = to ?? (study !== undefined && study.tell.length > 0 ? study.tell : config.keeper)
   if (recipients.length === 0) return
   const at = now()
   const domain = config.mail.from.slice(config.mail.from.lastIndexOf('@') + 1)

@@ -38,50 +38,74 @@ const WORDS = {
   'common-change': 'samples moved together',
 } as const
 
-/** What a letter about a sample says. `row`: times of the occasions on which the rule rang in a row, newest first. */
-export const sampleFacts = (
-  { rule, judgement, window, kept }: Judged,
-  row: readonly number[],
-  { room }: Stations,
-): UntoldFacts => {
+/** What a letter says. `row`: times of the occasions on which the rule rang in a row, newest first. */
+export const factsOf = (judged: Judged, row: readonly number[], { room }: Stations): UntoldFacts => {
   const { config } = room()
-  const { definition } = rule
+  const { rule, judgement, kept, about } = judged
   const { subject, identity, arrival } = kept
-  const now = window.occasions.at(-1)
+  const { name, title, priority } = rule.definition
   const inZone = (ms: number): string =>
     DateTime.fromMillis(ms, { zone: config.timeZone }).toISO({ suppressMilliseconds: true }) ??
     new Date(ms).toISOString()
+  return {
+    kind: 'alarm',
+    room: config.room,
+    rule: name,
+    ruleTitle: title,
+    ruleText: ruleText(rule.definition),
+    priority,
+    of: about.of,
+    subject: about.subject,
+    instrument: subject.instrument.name,
+    measuredAt: inZone(identity.measuredAt),
+    since: row.length === 0 ? null : inZone(row.at(-1)!),
+    spectra: row.length,
+    evidence: judgement.evidence,
+    file: arrival.file,
+    ...(about.of === 'sample' ? sampleStory(judged) : instrumentStory(judged)),
+  }
+}
+
+type Story = Pick<
+  UntoldFacts,
+  'study' | 'species' | 'speciesTitle' | 'parameters' | 'diagnosis' | 'confidence' | 'meaning' | 'check' | 'cautions'
+>
+
+const sampleStory = ({ kept: { subject }, window }: Judged): Story => {
+  const now = window.occasions.at(-1)
   const read = interpretChange({
     species: subject.species,
     before: bandsOf(window.reference.kind === 'ready' ? window.reference : null),
     now: bandsOf(now ?? null),
   })
   return {
-    kind: 'alarm',
-    room: config.room,
-    rule: definition.name,
-    ruleTitle: definition.title,
-    ruleText: ruleText(definition),
-    priority: definition.priority,
-    of: 'sample',
-    subject: subject.sample,
     study: subject.study.name,
     species: subject.species.name,
     speciesTitle: subject.species.title,
-    instrument: subject.instrument.name,
-    measuredAt: inZone(identity.measuredAt),
-    since: row.length === 0 ? null : inZone(row.at(-1)!),
-    spectra: row.length,
-    evidence: judgement.evidence,
     parameters: PARAMETERS.map(({ name, unit }) => parameter(name, unit, now, window.reference)),
     diagnosis: read.diagnosis,
     confidence: read.confidence,
     meaning: read.meaning,
     check: read.check,
     cautions: cautionsFor(subject.species, read.diagnosis),
-    file: arrival.file,
   }
 }
+
+const instrumentStory = ({ kept: { subject } }: Judged): Story => ({
+  study: null,
+  species: null,
+  speciesTitle: null,
+  parameters: [],
+  diagnosis: 'unclear',
+  confidence: null,
+  meaning: `The rule is about the instrument, not about one sample; the newest spectrum was of ${subject.sample}.`,
+  check: [
+    'Measure the blank again, with a clean cell.',
+    'Measure a check standard, and compare with its certificate.',
+    'How old is the lamp?',
+  ],
+  cautions: [],
+})
 
 const PARAMETERS = [
   { name: 'delta_o', unit: 'cm^-1' },

@@ -85,6 +85,9 @@ export const alarmList = (db: Db) => {
      RETURNING id`,
   )
   const addEvent = db.prepare(`INSERT INTO alarm_event (alarm, at, event, by, note) VALUES (?, ?, ?, ?, ?)`)
+  const happened = db.prepare<[number, string, number], { n: number }>(
+    `SELECT count(*) AS n FROM alarm_event WHERE alarm = ? AND event = ? AND at >= ?`,
+  )
   const putWatch = db.prepare(
     `INSERT INTO watch (rule, of, subject, instrument, active) VALUES (?, ?, ?, ?, ?)
      ON CONFLICT (rule, of, subject, instrument) DO UPDATE SET active = excluded.active`,
@@ -133,6 +136,9 @@ export const alarmList = (db: Db) => {
     event: (alarm: number, at: number, event: string, by: string, note: string): void => {
       addEvent.run(alarm, at, event, by, note)
     },
+
+    /** Whether an event of this kind happened to the alarm since a time. */
+    happened: (alarm: number, event: string, since: number): boolean => happened.get(alarm, event, since)!.n > 0,
 
     /** Whether the rule's condition holds on each instrument that measures the subject. */
     watch: ({ rule, of, subject }: AlarmKey): Readonly<Record<string, boolean>> =>

@@ -73,6 +73,12 @@ export const analyses = (db: Db) => {
      WHERE s.sample = @sample AND s.instrument = @instrument AND s.measured_at <= @until
        AND a.recipe IS @recipe AND a.engine = @engine AND ${IN_STATISTICS}
      ORDER BY s.measured_at DESC, s.id DESC LIMIT @limit`)
+  const onInstrument = db.prepare<
+    { instrument: string; engine: string; until: number; limit: number },
+    WindowSqlRow
+  >(`${WINDOW}
+     WHERE s.instrument = @instrument AND s.measured_at <= @until AND a.engine = @engine AND ${IN_STATISTICS}
+     ORDER BY s.measured_at DESC, s.id DESC LIMIT @limit`)
   const some = db.prepare<[string], WindowSqlRow>(
     `${WINDOW} WHERE s.id IN (SELECT value FROM json_each(?)) AND ${IN_STATISTICS} ORDER BY s.measured_at, s.id`,
   )
@@ -130,6 +136,17 @@ export const analyses = (db: Db) => {
       limit: number,
     ): readonly WindowRow[] =>
       window
+        .all({ ...of, until, limit })
+        .map(windowRow)
+        .reverse(),
+
+    /** Newest `limit` spectra of an instrument up to a time, whatever the sample, oldest first. */
+    windowOfInstrument: (
+      of: { instrument: string; engine: string },
+      until: number,
+      limit: number,
+    ): readonly WindowRow[] =>
+      onInstrument
         .all({ ...of, until, limit })
         .map(windowRow)
         .reverse(),

@@ -15,6 +15,13 @@ export interface NewJudgement {
   readonly at: number
 }
 
+/** A rule on a sample on an instrument, or (sample null) on the instrument whatever it measures. */
+export interface RuleSubject {
+  readonly rule: string
+  readonly sample: string | null
+  readonly instrument: string
+}
+
 /** What rules said of spectra. */
 export const judgements = (db: Db) => {
   const add = db.prepare(
@@ -22,17 +29,17 @@ export const judgements = (db: Db) => {
   )
   // replicates of one occasion are judged each time one comes: the last word counts
   const decidedBefore = db.prepare<
-    { rule: string; sample: string; instrument: string; before: number; limit: number },
+    RuleSubject & { before: number; limit: number },
     { outcome: JudgedAs; occasion: number }
   >(
     `SELECT j.outcome, j.occasion, max(j.id) FROM judgement j JOIN spectrum s ON s.id = j.spectrum
-      WHERE s.sample = @sample AND s.instrument = @instrument AND s.measured_at < @before
+      WHERE (@sample IS NULL OR s.sample = @sample) AND s.instrument = @instrument AND s.measured_at < @before
         AND j.rule = @rule AND j.occasion < @before AND j.outcome NOT IN ('gathering', 'undecided')
       GROUP BY j.occasion ORDER BY j.occasion DESC LIMIT @limit`,
   )
-  const later = db.prepare<{ rule: string; sample: string; instrument: string; after: number }, { n: number }>(
+  const later = db.prepare<RuleSubject & { after: number }, { n: number }>(
     `SELECT count(*) AS n FROM spectrum s JOIN judgement j ON j.spectrum = s.id
-      WHERE s.sample = @sample AND s.instrument = @instrument AND s.measured_at > @after
+      WHERE (@sample IS NULL OR s.sample = @sample) AND s.instrument = @instrument AND s.measured_at > @after
         AND j.rule = @rule AND j.occasion > @after AND j.outcome NOT IN ('gathering', 'undecided')`,
   )
 
@@ -43,14 +50,13 @@ export const judgements = (db: Db) => {
 
     /** Decided outcomes of earlier occasions, newest first. */
     decidedBefore: (
-      of: { rule: string; sample: string; instrument: string },
+      of: RuleSubject,
       occasion: number,
       limit: number,
     ): readonly { readonly outcome: JudgedAs; readonly occasion: number }[] =>
       decidedBefore.all({ ...of, before: occasion, limit }),
 
     /** Whether an occasion after this one has been decided already. */
-    hasLater: (of: { rule: string; sample: string; instrument: string }, occasion: number): boolean =>
-      (later.get({ ...of, after: occasion })?.n ?? 0) > 0,
+    hasLater: (of: RuleSubject, occasion: number): boolean => (later.get({ ...of, after: occasion })?.n ?? 0) > 0,
   }
 }

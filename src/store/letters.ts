@@ -54,6 +54,9 @@ export const letters = (db: Db) => {
     `UPDATE letter_recipient SET state = 'failed', attempts = attempts + 1, next_attempt_at = NULL, last_error = ?,
             first_attempt_at = coalesce(first_attempt_at, ?) WHERE id = ?`,
   )
+  const lastFacts = db.prepare<[number], { facts: string }>(
+    `SELECT facts FROM letter WHERE alarm = ? ORDER BY id DESC LIMIT 1`,
+  )
   const nextDue = db.prepare<[], { at: number | null }>(
     `SELECT min(next_attempt_at) AS at FROM letter_recipient WHERE state = 'waiting'`,
   )
@@ -103,6 +106,12 @@ export const letters = (db: Db) => {
     },
     markFailed: (id: number, at: number, why: string): void => {
       failed.run(why, at, id)
+    },
+
+    /** Facts of the newest letter about an alarm; null when none was written. */
+    lastFacts: (alarm: number): LetterFacts | null => {
+      const row = lastFacts.get(alarm)
+      return row === undefined ? null : (JSON.parse(row.facts) as LetterFacts)
     },
 
     /** When the next letter is due; null when none waits. */

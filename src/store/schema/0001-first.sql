@@ -59,6 +59,7 @@ CREATE TABLE spectrum (
   UNIQUE (arrival, position)
 ) STRICT;
 CREATE INDEX spectrum_by_time ON spectrum (sample, instrument, measured_at, id);
+CREATE INDEX spectrum_by_instrument ON spectrum (instrument, measured_at, id);
 
 CREATE TABLE recipe (
   sha256 TEXT PRIMARY KEY NOT NULL,
