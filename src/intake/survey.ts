@@ -84,17 +84,20 @@ const consider = (
 }
 
 /** One answer at a time, so that a file system that has died in the middle is noticed. */
-async function* answered(folder: Folder, source: AsyncGenerator<readonly Sighting[]>): AsyncGenerator<Sighting> {
+async function* answered(
+  folder: Folder,
+  source: AsyncGenerator<readonly Sighting[]>,
+): AsyncGenerator<readonly Sighting[]> {
   for (;;) {
     let next: IteratorResult<readonly Sighting[]>
     try {
       next = await folder.ask(() => source.next())
     } catch (error) {
-      yield { kind: 'lost', error }
+      yield [{ kind: 'lost', error }]
       return
     }
     if (next.done) return
-    yield* next.value
+    yield next.value
   }
 }
 
@@ -117,14 +120,16 @@ export const surveyAll = async (by: Surveyor, folder: Folder, trustTimes: boolea
   let files = 0
   let passedOver = 0
   let isComplete = true
-  for await (const sighting of answered(folder, sightings(found.place, ''))) {
+  for await (const batch of answered(folder, sightings(found.place, ''))) {
     if (by.stopped.aborted) return
-    if (sighting.kind === 'lost') return lose(folder, sighting.error, survey)
-    if (sighting.kind === 'file') files++
-    if (sighting.kind === 'unreadable') isComplete = false
-    if (sighting.kind === 'passed-over') passedOver++
-    else vanished.delete(sighting.file)
-    consider(by, folder, found.place, sighting, trustTimes, survey)
+    for (const sighting of batch) {
+      if (sighting.kind === 'lost') return lose(folder, sighting.error, survey)
+      if (sighting.kind === 'file') files++
+      if (sighting.kind === 'unreadable') isComplete = false
+      if (sighting.kind === 'passed-over') passedOver++
+      else vanished.delete(sighting.file)
+      consider(by, folder, found.place, sighting, trustTimes, survey)
+    }
   }
   // Below a subfolder that could not be opened nothing is known to be gone.
   for (const file of isComplete ? vanished : []) {
@@ -147,10 +152,12 @@ export const surveySome = async (
   if (found.kind === 'away') return
   if (found.appeared) return surveyAll(by, folder, trustTimes, survey)
   for (const path of paths) {
-    for await (const sighting of answered(folder, sightingsAt(found.place, path))) {
+    for await (const batch of answered(folder, sightingsAt(found.place, path))) {
       if (by.stopped.aborted) return
-      if (sighting.kind === 'lost') return lose(folder, sighting.error, survey)
-      consider(by, folder, found.place, sighting, trustTimes, survey)
+      for (const sighting of batch) {
+        if (sighting.kind === 'lost') return lose(folder, sighting.error, survey)
+        consider(by, folder, found.place, sighting, trustTimes, survey)
+      }
     }
   }
 }
