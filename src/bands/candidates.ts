@@ -14,8 +14,10 @@ const FLANK = { near: 500, start: 5000, far: 20000, narrowest: 2000, width: 6000
 export const BACKGROUNDS: readonly (readonly BackgroundTerm[])[] = [
   [{ kind: 'constant' }],
   [{ kind: 'constant' }, { kind: 'scatter', exponent: 4 }],
-  [{ kind: 'constant' }, { kind: 'scatter', exponent: 2 }],
 ]
+
+/** Tried with the bands that describe the spectra best: scatter of particles no longer small beside the wavelength. */
+export const OTHER_BACKGROUNDS: typeof BACKGROUNDS = [[{ kind: 'constant' }, { kind: 'scatter', exponent: 2 }]]
 
 const nameOf = (bands: number, flank: boolean, background: readonly BackgroundTerm[]): string =>
   [

@@ -10,7 +10,7 @@
  * On noise alone τ = 1 and the score is the usual one. Points are joined to some 240, which loses nothing of a broad band.
  */
 import type { Spectrum } from '../spectrum/types.ts'
-import { BACKGROUNDS, makeRecipe } from './candidates.ts'
+import { BACKGROUNDS, makeRecipe, OTHER_BACKGROUNDS } from './candidates.ts'
 import { findMisfit } from './misfit.ts'
 import { disorder, joinNeighbours, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
 import { apart, findSeeds, NARROWEST_PER_CM, type Seed, WIDEST_PER_CM } from './seeds.ts'
@@ -93,7 +93,8 @@ const choose = (
   )
   const seen = [...empty, ...seeded].filter((trial) => trial !== null)
   const suggested = suggestions(seen, points, bands, attempt)
-  const scored = score([...seen, ...suggested], points)
+  const varied = variants([...seen, ...suggested], points, attempt)
+  const scored = score([...seen, ...suggested, ...varied], points)
   const mayBeChosen = (trial: Scored) =>
     bands === undefined
       ? trial.firm && (isSeen(trial, seeds) || findMisfit(trial.recipe, joined) === 0)
@@ -149,6 +150,18 @@ const isSeen = (trial: Trial, seeds: readonly Seed[]): boolean => {
   })
 }
 
+/** The best band positions so far under the other backgrounds. */
+const variants = (trials: readonly Trial[], points: readonly Selection[], attempt: Attempt): readonly Trial[] => {
+  const best = bestOf(
+    score(
+      trials.filter(({ firm }) => firm),
+      points,
+    ),
+  )
+  const tried = best ? everyBackground(bandPlaces(best), attempt, OTHER_BACKGROUNDS) : []
+  return tried.filter((trial) => trial !== null)
+}
+
 /** Every choice of places that holds the hinted ones, or else the strongest; of `count` places where that is given. */
 const subsets = (seeds: readonly Seed[], hinted: number, count: number | undefined): readonly (readonly Seed[])[] => {
   const certain = seeds.slice(0, Math.min(count ?? Infinity, Math.max(1, hinted)))
@@ -173,8 +186,12 @@ const placesOf = (points: readonly Selection[], hints: readonly BandHint[]): rea
   return apart([...hinted, ...seen])
 }
 
-const everyBackground = (places: readonly Place[], attempt: Attempt): readonly (Trial | null)[] =>
-  BACKGROUNDS.flatMap((background) => [false, true].map((flank) => attempt(places, flank, background)))
+const everyBackground = (
+  places: readonly Place[],
+  attempt: Attempt,
+  backgrounds = BACKGROUNDS,
+): readonly (Trial | null)[] =>
+  backgrounds.flatMap((background) => [false, true].map((flank) => attempt(places, flank, background)))
 
 /** Null where, in most of the spectra, a component comes out without height, as structure, beyond the data or undetermined. */
 const tryRecipe = (recipe: Recipe, points: readonly Selection[]): Trial | null => {

@@ -30,11 +30,13 @@ export interface Tolerances {
   readonly gradient: number
   readonly step: number
   readonly iterations: number
+  /** λ at the start: small where the start is good. */
+  readonly damping?: number
 }
 
-export interface Minimum {
+export interface Minimum<Q extends Quadratic = Quadratic> {
   readonly parameters: Float64Array
-  readonly at: Quadratic
+  readonly at: Q
   readonly iterations: number
   readonly stopped: 'relative change' | 'gradient' | 'step' | 'iterations'
 }
@@ -110,18 +112,18 @@ const isTiny = (step: Float64Array, p: Float64Array, tolerance: number): boolean
  * The minimum of `objective` in the box, from `start` (moved into the box). `objective` returns null where the
  * model can't be evaluated; the step is then shortened. Null where the start can't be evaluated.
  */
-export const minimise = (
-  objective: (p: Float64Array) => Quadratic | null,
+export const minimise = <Q extends Quadratic>(
+  objective: (p: Float64Array) => Q | null,
   start: Float64Array,
   box: Box,
   tolerances: Tolerances,
-): Minimum | null => {
+): Minimum<Q> | null => {
   let p = start.map((v, i) => Math.min(box.upper[i]!, Math.max(box.lower[i]!, v)))
   let at = objective(p)
   if (!at || !Number.isFinite(at.cost)) return null
   const n = p.length
   const diagonal = new Float64Array(n)
-  let lambda = 1e-3
+  let lambda = tolerances.damping ?? 1e-3
   let growth = 2
   for (let iteration = 0; iteration < tolerances.iterations; iteration++) {
     const free = freeParameters(p, at.gradient, box)
@@ -138,8 +140,11 @@ export const minimise = (
     if (step) {
       if (isTiny(step, p, tolerances.step)) return { parameters: p, at, iterations: iteration, stopped: 'step' }
       const predicted = predictedReduction(at, step)
+      // An undamped step that promises no more than this need not be tried.
+      if (lambda < 1e-2 && predicted >= 0 && predicted <= tolerances.relativeChange * at.cost)
+        return { parameters: p, at, iterations: iteration, stopped: 'relative change' }
       const trialPoint = p.map((v, i) => v + step[i]!)
-      const trial: Quadratic | null = predicted > 0 ? objective(trialPoint) : null
+      const trial: Q | null = predicted > 0 ? objective(trialPoint) : null
       const gained: number = trial ? at.cost - trial.cost : -1
       const within = (share: number) => Math.abs(gained) <= share * at!.cost && predicted <= share * at!.cost
       const converged = within(tolerances.relativeChange)

@@ -29,7 +29,7 @@ export interface Separated extends Quadratic {
   readonly phiPhi: Float64Array
   readonly phiD: Float64Array
   readonly dD: Float64Array
-  /** Weighted residuals; overwritten by the next evaluation. */
+  /** Weighted. */
   readonly residuals: Float64Array
 }
 
@@ -109,7 +109,6 @@ export const separable = (recipe: Recipe, { x, y, weight }: Points): ((alpha: Fl
   const target = y.map((v, i) => v * weight[i]!)
   const phi = Array.from({ length: m }, column)
   const slopes = Array.from({ length: n }, column)
-  const residuals = column()
   exponents.forEach((exponent, k) => {
     const fixed = phi[nBands + k]!
     for (let i = 0; i < count; i++) fixed[i] = backgroundAt(exponent, origin, x[i]!) * weight[i]!
@@ -129,7 +128,7 @@ export const separable = (recipe: Recipe, { x, y, weight }: Points): ((alpha: Fl
     const linear = nonNegative(phiPhi, right, signed)
     if (!linear) return null
     const { coefficients, active } = linear
-    residuals.set(target)
+    const residuals = target.slice()
     for (const i of active) {
       const c = coefficients[i]!
       const f = phi[i]!

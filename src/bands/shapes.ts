@@ -88,7 +88,7 @@ export const scatterOrigin = (recipe: Recipe): number => (recipe.windowPerCm[0] 
 
 /** Background term at wavenumber x: 1, or (x/x₀)ⁿ. */
 export const backgroundAt = (exponent: number, origin: number, x: number): number =>
-  exponent === 0 ? 1 : (x / origin) ** exponent
+  exponent === 0 ? 1 : exponent === 4 ? ((x / origin) ** 2) ** 2 : (x / origin) ** exponent
 
 export const backgroundExponents = (recipe: Recipe): readonly number[] =>
   recipe.background.map((term) => (term.kind === 'constant' ? 0 : term.exponent))

@@ -5,16 +5,15 @@ import { type Points, type Separated, separable } from './separable.ts'
 import { searchSpace } from './shapes.ts'
 import type { Recipe } from './types.ts'
 
-export interface Solution extends Omit<Minimum, 'at'> {
-  readonly at: Separated
+export interface Solution extends Minimum<Separated> {
   /** Σ (r/σ)² */
   readonly chi2: number
 }
 
 const APPROACH: Tolerances = { relativeChange: 1e-3, gradient: 1e-4, step: 1e-5, iterations: 40 }
-/** Enough to tell recipes apart: a change of 10⁻⁶ of χ² is far below a point of score. */
-export const ROUGH: Tolerances = { relativeChange: 1e-6, gradient: 1e-6, step: 1e-7, iterations: 40 }
-const FINAL: Tolerances = { relativeChange: 1e-9, gradient: 1e-9, step: 1e-9, iterations: 100 }
+/** Enough to tell recipes apart: a change of 10⁻⁵ of χ² is far below a point of score. */
+export const ROUGH: Tolerances = { relativeChange: 1e-5, gradient: 1e-5, step: 1e-6, iterations: 40 }
+const FINAL: Tolerances = { relativeChange: 1e-9, gradient: 1e-9, step: 1e-9, iterations: 100, damping: 1e-6 }
 const THINNED_FROM = 240
 const THINNING = 4
 
@@ -31,8 +30,5 @@ export const solveRecipe = (recipe: Recipe, points: Points, tolerances = FINAL):
     }
   }
   const found = minimise(separable(recipe, points), from, space.box, tolerances)
-  // The residuals of the last accepted evaluation may have been overwritten by a refused trial: evaluate once more.
-  const at = found && separable(recipe, points)(found.parameters)
-  if (!found || !at) return null
-  return { ...found, at, iterations: iterations + found.iterations, chi2: 2 * at.cost }
+  return found && { ...found, iterations: iterations + found.iterations, chi2: 2 * found.at.cost }
 }
