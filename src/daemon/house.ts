@@ -198,7 +198,12 @@ const tellLog = (log: Logger, event: IntakeEvent): void => {
 }
 
 /** Settling can be hurried where files are known to be written at once (tests, the demo). */
-const optionsFromEnvironment = (): Partial<IntakeOptions> => {
-  const settleMs = Number(process.env.TENDQ_SETTLE_MS)
-  return Number.isFinite(settleMs) && settleMs > 0 ? { settleMs } : {}
+const optionsFromEnvironment = (): Partial<IntakeOptions> => ({
+  ...patience('settleMs', process.env.TENDQ_SETTLE_MS),
+  ...patience('giveUpMs', process.env.TENDQ_GIVE_UP_MS),
+})
+
+const patience = (name: 'settleMs' | 'giveUpMs', text: string | undefined): Partial<IntakeOptions> => {
+  const ms = Number(text)
+  return Number.isFinite(ms) && ms > 0 ? { [name]: ms } : {}
 }

@@ -58,10 +58,13 @@ describe('the daemon', () => {
     const intake = room.rows<{ file: string; outcome: string; reason: string | null }>(
       'SELECT file, outcome, reason FROM intake ORDER BY file',
     )
-    expect(intake.map(({ outcome }) => outcome)).toContain('stored')
+    expect(intake.map(({ outcome }) => outcome)).toEqual(['stored', 'rejected'])
+    expect(intake[1]?.reason).toMatch(/AGE-2_20260302T0900\.csv:3:5: .*nonsense.*; /)
     const status = await room.run(['status', '--json'])
     expect(status.code).toBe(1)
-    expect(JSON.parse(status.stdout).reasons.join()).toMatch(/no daemon/)
+    const health = JSON.parse(status.stdout)
+    expect(health.reasons.join()).toMatch(/no daemon.*a file was set aside: uv1 AGE-2_20260302T0900\.csv/)
+    expect(health.set_aside[0].reason).toBe(intake[1]?.reason)
   })
 
   it('keeps a file once, whatever it is called and however often it is touched', async () => {

@@ -122,7 +122,14 @@ export const testRoom = (smtpPort = 9): TestRoom => {
   const spawned = (args: readonly string[], env: Record<string, string> = {}) => {
     const child = spawn(process.execPath, [CLI, ...args], {
       cwd: folder,
-      env: { ...process.env, TENDQ_SETTLE_MS: '100', TENDQ_CONFIG: config, NO_COLOR: '1', ...env },
+      env: {
+        ...process.env,
+        TENDQ_SETTLE_MS: '100',
+        TENDQ_GIVE_UP_MS: '1500',
+        TENDQ_CONFIG: config,
+        NO_COLOR: '1',
+        ...env,
+      },
       stdio: ['ignore', 'pipe', 'pipe'],
     })
     children.add(child)
