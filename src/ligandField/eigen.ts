@@ -143,7 +143,8 @@ export const eigensystem = (a: Float64Array, n: number, vectors: Float64Array): 
       on += a[i * n + i]! * a[i * n + i]!
       for (let j = i + 1; j < n; j += 1) off += a[i * n + j]! * a[i * n + j]!
     }
-    if (off <= 1e-32 * on || off === 0) break
+    // what is left moves an eigenvalue by off²/gap, a vector by 1e-13
+    if (off <= 1e-26 * on) break
     for (let p = 0; p < n - 1; p += 1) for (let q = p + 1; q < n; q += 1) rotate(a, vectors, n, p, q)
   }
   // selection sort, n is small

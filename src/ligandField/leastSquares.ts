@@ -158,6 +158,7 @@ export const descend = (problem: Problem, start: readonly number[]): Minimum => 
   let chi2 = linearise(problem, p)
   let damping = 0
   let iterations = 0
+  let stale = false // whether the Jacobian is that of a refused trial
   while (iterations < 60) {
     iterations += 1
     normalEquations(rows, free, normal, gradient)
@@ -174,10 +175,12 @@ export const descend = (problem: Problem, start: readonly number[]): Minimum => 
         if (tied) trial[2] = cOverB * trial[1]!
         if (size < 1e-11) break
         const now = linearise(problem, trial)
+        stale = true
         // near a minimum χ² is flat to rounding: small undamped steps are trusted, so that p settles to 1e-11
         const settling = chi2 > 1e-9 && damping === 0 && size < 1e-5 && now <= chi2 * (1 + 1e-9)
         if (now < chi2 || settling) {
           better = true
+          stale = false
           chi2 = now
           p[0] = trial[0]
           p[1] = trial[1]
@@ -190,13 +193,16 @@ export const descend = (problem: Problem, start: readonly number[]): Minimum => 
     }
     if (!better || size < 1e-11) break
   }
-  chi2 = linearise(problem, p)
+  if (stale) chi2 = linearise(problem, p)
   normalEquations(rows, free, normal, gradient)
   return { p, chi2, normal, iterations }
 }
 
 const profile = new Float64Array(STEPS + 1)
 const scale = new Float64Array(STEPS + 1)
+/** V⁻¹ and V⁻¹y. */
+const weights = new Float64Array(MOST * MOST)
+const weighted = new Float64Array(MOST)
 
 /** Starting points: local minima of χ² over the direction, best scale inside. Appended to `starts`. */
 const scan = (problem: Problem, cOverB: number, starts: number[][]): void => {
@@ -205,18 +211,28 @@ const scan = (problem: Problem, cOverB: number, starts: number[][]): void => {
   const table = scanOf(model.scheme, cOverB)
   const width = model.scheme.transitions.length
   const { columns } = model
-  const y = new Float64Array(n)
-  for (let i = 0; i < n; i += 1) for (let j = 0; j <= i; j += 1) y[i]! += whitener[i * n + j]! * observed[j]!
+  for (let i = 0; i < n; i += 1) {
+    let sum = 0
+    for (let j = 0; j < n; j += 1) {
+      let v = 0
+      for (let m = Math.max(i, j); m < n; m += 1) v += whitener[m * n + i]! * whitener[m * n + j]!
+      weights[i * n + j] = v
+      sum += v * observed[j]!
+    }
+    weighted[i] = sum
+  }
   profile[0] = Number.POSITIVE_INFINITY
   profile[STEPS] = Number.POSITIVE_INFINITY
   for (let k = 1; k < STEPS; k += 1) {
+    const row = (k - 1) * width
     let ff = 0
     let fy = 0
     for (let i = 0; i < n; i += 1) {
-      let f = 0
-      for (let j = 0; j <= i; j += 1) f += whitener[i * n + j]! * table[(k - 1) * width + columns[j]!]!
-      ff += f * f
-      fy += f * y[i]!
+      const f = table[row + columns[i]!]!
+      let along = weights[i * n + i]! * f
+      for (let j = 0; j < i; j += 1) along += 2 * weights[i * n + j]! * table[row + columns[j]!]!
+      ff += f * along
+      fy += f * weighted[i]!
     }
     scale[k] = fy / ff
     profile[k] = fy > 0 && ff > 0 ? -(fy * fy) / ff : Number.POSITIVE_INFINITY
