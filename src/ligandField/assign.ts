@@ -14,7 +14,7 @@
 import type { Flag } from '../spectrum/types.ts'
 import { type Band, dependenceOf, gather } from './gather.ts'
 import { type Choice, type Hypothesis, hypotheses, isTriple } from './hypotheses.ts'
-import { solveParameters } from './solve.ts'
+import { solveRoles } from './solve.ts'
 import { type TermScheme, termScheme, usualSpin } from './terms.ts'
 import type { AssignedBand, Assignment, Geometry, Ion, ObservedBand, ParameterFit, Spin } from './types.ts'
 
@@ -83,7 +83,7 @@ const weigh = (ion: Ion, scheme: TermScheme, observed: readonly ObservedBand[], 
     const own = observed.find((band) => band.positionPerCm === positionPerCm)!.uPositionPerCm
     return bands.map((_, j) => (i === j ? (MODEL_ERROR * positionPerCm) ** 2 + own * own : 0))
   })
-  const fit = solveParameters(ion, scheme.geometry, scheme.spin, bands, covariance)
+  const fit = solveRoles(ion, scheme.geometry, scheme.spin, bands, covariance, false)
   if (fit.flags.includes('impossible-ratio')) return Number.NEGATIVE_INFINITY
   const field = plausible(ion, scheme, fit) + lone(ion, scheme, fit, bands)
   return plain - (fit.chi2 ?? 0) / 2 + field + complete(scheme, observed, hypothesis, fit)

@@ -9,11 +9,9 @@ import { eigensystem } from './eigen.ts'
 import { type Band, type Dependence, dependenceOf, type Gathered, gather } from './gather.ts'
 import { profileInterval } from './interval.ts'
 import { type Minimum, minimaOf, type Problem, whitenerOf } from './leastSquares.ts'
+import { missOf, remarksOn } from './remarks.ts'
 import { hasTwoSpins, type TermScheme, termScheme, usualSpin } from './terms.ts'
 import type { Geometry, Ion, ParameterFit, Spin } from './types.ts'
-
-/** 99 % quantiles of χ² for 1 to 5 degrees of freedom (standard table). */
-const CHI2_99 = [6.635, 9.21, 11.345, 13.277, 15.086]
 
 const KINDLY = 1e-6
 
@@ -28,6 +26,16 @@ export const solveParameters = (
   spin: Spin | null,
   bands: readonly Band[],
   covariancePerCm2: readonly (readonly number[])[],
+): ParameterFit => solveRoles(ion, geometry, spin, bands, covariancePerCm2, true)
+
+/** As `solveParameters`; `withInterval` false spares the profile interval, which weighing many assignments does not need. */
+export const solveRoles = (
+  ion: Ion,
+  geometry: Geometry,
+  spin: Spin | null,
+  bands: readonly Band[],
+  covariancePerCm2: readonly (readonly number[])[],
+  withInterval: boolean,
 ): ParameterFit => {
   const meant = spin ?? usualSpin(ion, geometry)
   const scheme = termScheme(ion.d, geometry, meant)
@@ -47,7 +55,7 @@ export const solveParameters = (
     return { ...empty, ...more(empty, 'no-band', 'no band with a role of this ion') }
   if (gathered.positionsPerCm.some((x) => !(x > 0 && Number.isFinite(x))))
     return { ...empty, ...more(empty, 'no-band', 'a band position is no positive wavenumber') }
-  return solve(ion, scheme, gathered, empty)
+  return solve(ion, scheme, gathered, empty, withInterval)
 }
 
 const say = (d: number, geometry: Geometry, spin: Spin | null): string =>
@@ -87,7 +95,13 @@ const more = (fit: ParameterFit, flag: Flag, remark: string): Pick<ParameterFit,
 })
 
 /** Least squares need as many bands as parameters; a prior on C/B counts as one where C matters. */
-const solve = (ion: Ion, scheme: TermScheme, gathered: Gathered, empty: ParameterFit): ParameterFit => {
+const solve = (
+  ion: Ion,
+  scheme: TermScheme,
+  gathered: Gathered,
+  empty: ParameterFit,
+  withInterval: boolean,
+): ParameterFit => {
   const { transitions, positionsPerCm, covariancePerCm2 } = gathered
   const dependence = dependenceOf(scheme, transitions)
   const [onDelta, onB, onC] = dependence.on
@@ -111,7 +125,7 @@ const solve = (ion: Ion, scheme: TermScheme, gathered: Gathered, empty: Paramete
   const impossible = onB ? possible.length === 0 : minima.length === 0
   if (impossible) return { ...start, ...more(start, 'impossible-ratio', sayImpossible(scheme, gathered)) }
   const ranked = rank(ion, dependence, onB ? possible : minima)
-  return describe(ion, problem, ranked, whitener !== null, start)
+  return describe(ion, problem, ranked, whitener !== null, start, withInterval)
 }
 
 const sayImpossible = (scheme: TermScheme, { transitions, positionsPerCm }: Gathered): string => {
@@ -126,13 +140,6 @@ const isPossible = ({ p, chi2 }: Minimum, problem: Problem, freedom: number): bo
   if (freedom > 0) return true
   if (problem.prior !== null) return chi2 < 9
   return missOf(p, problem) < KINDLY
-}
-
-/** Largest relative distance between a band and the model. */
-const missOf = (p: readonly number[], { model, observed }: Problem): number => {
-  const positions = new Float64Array(model.count)
-  model.evaluate(p[0]!, p[1]!, p[2]!, positions, new Float64Array(model.count * 3))
-  return Math.max(...observed.map((y, i) => Math.abs(y - positions[i]!) / y))
 }
 
 /** B/B₀ of complexes lies around 0.75, spread 0.2, never much above 1 (common practice). */
@@ -199,6 +206,7 @@ const describe = (
   { best, others }: Ranked,
   weighted: boolean,
   start: ParameterFit,
+  withInterval: boolean,
 ): ParameterFit => {
   const { free, prior } = problem
   const freedom = start.degreesOfFreedom
@@ -211,7 +219,7 @@ const describe = (
     known(k) && (weighted || freedom > 0) ? Math.sqrt(covariance[k * 4]! * misfit) : null
   const uLinear = [linear(0), linear(1), linear(2)]
   const b = value(1)
-  const loose = b !== null && uLinear[1] !== null && uLinear[1]! > LOOSE * b
+  const loose = withInterval && b !== null && uLinear[1] !== null && uLinear[1]! > LOOSE * b
   const interval = loose ? profileInterval(problem, best, 1, uLinear[1]!, misfit) : null
   const uB =
     interval !== null && interval.low !== null && interval.high !== null
@@ -243,54 +251,4 @@ const describe = (
     flags: [...new Set([...start.flags, ...said.map(([flag]) => flag)])].filter((flag) => flag !== null),
     remarks: [...start.remarks, ...said.map(([, remark]) => remark)],
   }
-}
-
-/** What a reader must know about the numbers; a flag where the contract has one. */
-const remarksOn = (
-  ion: Ion,
-  problem: Problem,
-  fit: ParameterFit,
-  best: Minimum,
-  rival: Minimum | null,
-  weighted: boolean,
-  fromTable: boolean,
-): readonly (readonly [Flag | null, string])[] => {
-  const { bPerCm: b, uBPerCm: uB, deltaPerCm: delta, degreesOfFreedom: freedom } = fit
-  const out: (readonly [Flag | null, string])[] = []
-  if (!problem.free[1]) out.push(['single-band', `${fit.bandsUsed.join(', ')} gives Δ only: B needs a second band`])
-  const openNames = ['Δ', 'B', 'C'].filter((_, k) => problem.free[k] && [delta, b, fit.cPerCm][k] === null)
-  if (openNames.length > 0)
-    out.push([
-      'ill-conditioned',
-      `${fit.bandsUsed.join(', ')} leave ${openNames.join(' and ')} open: another band is needed`,
-    ])
-  if (!weighted) out.push(['ill-conditioned', 'the band positions carry no usable covariance: bands weighed alike'])
-  const stretch = weighted && freedom > 0 ? Math.sqrt(Math.max(1, best.chi2 / freedom)) : 1
-  if (b !== null && uB !== null && uB > 0.05 * stretch * b)
-    out.push([
-      'ill-conditioned',
-      `${fit.bandsUsed.join(', ')} hold B loosely, to ${((100 * uB) / b).toFixed(0)} %: another band would mend it`,
-    ])
-  if (fromTable)
-    out.push([
-      'c-from-table',
-      `C/B = ${ion.cOverB} ± ${ion.uCOverB} taken from the table: a spin-forbidden band would fix it`,
-    ])
-  const limit = CHI2_99[Math.min(freedom, CHI2_99.length) - 1]
-  if (weighted && limit !== undefined && best.chi2 > limit)
-    out.push([
-      'misfit',
-      `the bands are missed by up to ${(100 * missOf(best.p, problem)).toFixed(1)} %, chi2/ν ${(best.chi2 / freedom).toFixed(1)}: the uncertainties are widened by its root`,
-    ])
-  if (rival !== null)
-    out.push([
-      'ambiguous-assignment',
-      `the same bands also fit Δ ${rival.p[0].toFixed(0)}, B ${rival.p[1].toFixed(0)} cm^-1`,
-    ])
-  if (b !== null && ion.freeIonBPerCm !== null && b > 1.05 * ion.freeIonBPerCm && b - 2 * (uB ?? 0) > ion.freeIonBPerCm)
-    out.push([
-      'misfit',
-      `B exceeds that of the free ion, ${ion.freeIonBPerCm} cm^-1: look at the assignment or the ion`,
-    ])
-  return out
 }
