@@ -166,10 +166,8 @@ const variants = (trials: readonly Trial[], points: readonly Selection[], attemp
 const subsets = (seeds: readonly Seed[], hinted: number, count: number | undefined): readonly (readonly Seed[])[] => {
   const certain = seeds.slice(0, Math.min(count ?? Infinity, Math.max(1, hinted)))
   const rest = seeds.slice(certain.length)
-  const choices = rest.reduce<readonly (readonly Seed[])[]>(
-    (sets, seed) => [...sets, ...sets.map((set) => [...set, seed])],
-    certain.length > 0 ? [certain] : [],
-  )
+  const choices: (readonly Seed[])[] = certain.length > 0 ? [certain] : []
+  for (const seed of rest) choices.push(...choices.map((set) => [...set, seed]))
   const wanted = Math.min(count ?? Infinity, seeds.length)
   return count === undefined ? choices : choices.filter((set) => set.length === wanted)
 }

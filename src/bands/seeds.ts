@@ -60,11 +60,9 @@ export const findSeeds = (points: Points): readonly Seed[] => {
 }
 
 /** Keeps the stronger of two seeds that are closer than the narrowest band. */
-export const apart = (seeds: readonly Seed[]): readonly Seed[] =>
-  seeds.reduce<readonly Seed[]>(
-    (kept, seed) =>
-      kept.some((other) => Math.abs(other.positionPerCm - seed.positionPerCm) < NARROWEST_PER_CM)
-        ? kept
-        : [...kept, seed],
-    [],
-  )
+export const apart = (seeds: readonly Seed[]): readonly Seed[] => {
+  const kept: Seed[] = []
+  for (const seed of seeds)
+    if (kept.every((other) => Math.abs(other.positionPerCm - seed.positionPerCm) >= NARROWEST_PER_CM)) kept.push(seed)
+  return kept
+}

@@ -34,21 +34,36 @@ export interface Separated extends Quadratic {
 }
 
 const dot = (a: Float64Array, b: Float64Array): number => {
-  const n = a.length
-  const whole = n - (n % 4)
-  let s0 = 0
-  let s1 = 0
-  let s2 = 0
-  let s3 = 0
-  let i = 0
-  for (; i < whole; i += 4) {
-    s0 += a[i]! * b[i]!
-    s1 += a[i + 1]! * b[i + 1]!
-    s2 += a[i + 2]! * b[i + 2]!
-    s3 += a[i + 3]! * b[i + 3]!
+  let sum = 0
+  for (let i = 0; i < a.length; i++) sum += a[i]! * b[i]!
+  return sum
+}
+
+/** Dot products of one column with others, four at a time: reading the columns is what takes the time. */
+const products = (a: Float64Array, others: readonly Float64Array[]): Float64Array => {
+  const result = new Float64Array(others.length)
+  const count = a.length
+  let k = 0
+  for (; k + 4 <= others.length; k += 4) {
+    const [b, c, d, e] = [others[k]!, others[k + 1]!, others[k + 2]!, others[k + 3]!]
+    let s0 = 0
+    let s1 = 0
+    let s2 = 0
+    let s3 = 0
+    for (let i = 0; i < count; i++) {
+      const v = a[i]!
+      s0 += v * b[i]!
+      s1 += v * c[i]!
+      s2 += v * d[i]!
+      s3 += v * e[i]!
+    }
+    result[k] = s0
+    result[k + 1] = s1
+    result[k + 2] = s2
+    result[k + 3] = s3
   }
-  for (; i < n; i++) s0 += a[i]! * b[i]!
-  return s0 + s1 + (s2 + s3)
+  for (; k < others.length; k++) result[k] = dot(a, others[k]!)
+  return result
 }
 
 /** Least squares with some coefficients ≥ 0 (Lawson & Hanson 1974, ch. 23, by dropping from the full set and letting back in). */
@@ -122,8 +137,9 @@ export const separable = (recipe: Recipe, { x, y, weight }: Points): ((alpha: Fl
     const phiPhi = new Float64Array(m * m)
     const right = new Float64Array(m)
     for (let i = 0; i < m; i++) {
-      right[i] = dot(phi[i]!, target)
-      for (let j = 0; j <= i; j++) phiPhi[i * m + j] = phiPhi[j * m + i] = dot(phi[i]!, phi[j]!)
+      const row = products(phi[i]!, [target, ...phi.slice(0, i + 1)])
+      right[i] = row[0]!
+      for (let j = 0; j <= i; j++) phiPhi[i * m + j] = phiPhi[j * m + i] = row[j + 1]!
     }
     const linear = nonNegative(phiPhi, right, signed)
     if (!linear) return null
@@ -140,11 +156,11 @@ export const separable = (recipe: Recipe, { x, y, weight }: Points): ((alpha: Fl
     const gradient = new Float64Array(n)
     for (let a = 0; a < n; a++) {
       const c = coefficients[a >> 1]!
-      gradient[a] = c === 0 ? 0 : -c * dot(slopes[a]!, residuals)
       if (c === 0) continue
-      for (let i = 0; i < m; i++) phiD[i * n + a] = dot(phi[i]!, slopes[a]!)
-      for (let b = 0; b <= a; b++)
-        if (coefficients[b >> 1]! !== 0) dD[a * n + b] = dD[b * n + a] = dot(slopes[a]!, slopes[b]!)
+      const row = products(slopes[a]!, [residuals, ...phi, ...slopes.slice(0, a + 1)])
+      gradient[a] = -c * row[0]!
+      for (let i = 0; i < m; i++) phiD[i * n + a] = row[i + 1]!
+      for (let b = 0; b <= a; b++) if (coefficients[b >> 1]! !== 0) dD[a * n + b] = dD[b * n + a] = row[m + 1 + b]!
     }
     const factor = cholesky(submatrix(phiPhi, m, active), active.length)
     if (!factor || !Number.isFinite(cost)) return null

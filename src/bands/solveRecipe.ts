@@ -12,23 +12,27 @@ export interface Solution extends Minimum<Separated> {
 
 const APPROACH: Tolerances = { relativeChange: 1e-3, gradient: 1e-4, step: 1e-5, iterations: 40 }
 /** Enough to tell recipes apart: a change of 10⁻⁵ of χ² is far below a point of score. */
-export const ROUGH: Tolerances = { relativeChange: 1e-5, gradient: 1e-5, step: 1e-6, iterations: 40 }
-const FINAL: Tolerances = { relativeChange: 1e-9, gradient: 1e-9, step: 1e-9, iterations: 100, damping: 1e-6 }
+export const ROUGH: Tolerances = { relativeChange: 1e-5, gradient: 1e-5, step: 1e-6, iterations: 25 }
+const FINAL: Tolerances = { relativeChange: 1e-9, gradient: 1e-9, step: 1e-9, iterations: 100 }
+/** λ after the approach. */
+const NEARLY_THERE = 1e-6
 const THINNED_FROM = 240
 const THINNING = 4
 
 /** Null where the model can't be evaluated at all. */
-export const solveRecipe = (recipe: Recipe, points: Points, tolerances = FINAL): Solution | null => {
+export const solveRecipe = (recipe: Recipe, points: Points, tolerances: Tolerances = FINAL): Solution | null => {
   const space = searchSpace(recipe)
   let from = space.start
   let iterations = 0
+  let settings: Tolerances = tolerances
   if (points.x.length >= THINNED_FROM) {
     const approach = minimise(separable(recipe, thin(points, THINNING)), from, space.box, APPROACH)
     if (approach) {
       from = approach.parameters
       iterations = approach.iterations
+      settings = { ...tolerances, damping: NEARLY_THERE }
     }
   }
-  const found = minimise(separable(recipe, points), from, space.box, tolerances)
+  const found = minimise(separable(recipe, points), from, space.box, settings)
   return found && { ...found, iterations: iterations + found.iterations, chi2: 2 * found.at.cost }
 }

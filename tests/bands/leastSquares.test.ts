@@ -39,15 +39,6 @@ describe('the least-squares core meets the certified values of NIST StRD', () =>
         const covariance = inverse(cholesky(found.at.hessian, n, 0)!)
         const inParameters = set.certified.map((c, i) => digits(found.parameters[i]!, c))
         const inDeviations = set.deviations.map((c, i) => digits(Math.sqrt(variance * covariance[i * n + i]!), c))
-        if (process.env['NIST_SHOW'])
-          console.log(
-            name,
-            which + 1,
-            found.stopped,
-            found.iterations,
-            Math.min(...inParameters).toFixed(1),
-            Math.min(...inDeviations).toFixed(1),
-          )
         expect(found.stopped).not.toBe('iterations')
         expect(Math.min(...inParameters)).toBeGreaterThan(wanted[0]!)
         expect(Math.min(...inDeviations)).toBeGreaterThan(wanted[1]!)
