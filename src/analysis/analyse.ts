@@ -59,8 +59,9 @@ export const lockRecipe = (
   const { recipe, admissible } = choice
   const newest = spectra.at(-1)!
   const fit = fitBands(newest, recipe, [recipe])
-  const roles = fit.kind === 'fitted' ? assign(fit.components, context).roles : recipe.components.map(() => NO_ROLE)
-  return { recipe, admissible, roles }
+  const assigned =
+    fit.kind === 'fitted' ? assign(fit.components, context) : { roles: recipe.components.map(() => NO_ROLE), flags: [] }
+  return { recipe, admissible, ...assigned }
 }
 
 /** How many of the species' bands the spectra can show; null where nothing is expected. */
@@ -129,7 +130,6 @@ const fitted = (spectrum: Spectrum, context: AnalysisContext, locked: LockedReci
       flags: unique([...spectrum.flags, ...fit.flags]),
       remarks: [...spectrum.remarks, fit.why],
     }
-  const fresh = assign(fit.components, context)
   const covariance = withWavelengthError(fit, context.repeatabilityNm)
   const bands = fit.components.map((component, i) =>
     band(component, locked.roles[i] ?? NO_ROLE, covariance?.[i]?.[i] ?? null, spectrum, context.repeatabilityNm),
@@ -142,7 +142,7 @@ const fitted = (spectrum: Spectrum, context: AnalysisContext, locked: LockedReci
     locked,
     bands,
     ligandField,
-    flags: unique([...spectrum.flags, ...fit.flags, ...fresh.flags, ...(ligandField?.flags ?? [])]),
+    flags: unique([...spectrum.flags, ...fit.flags, ...locked.flags, ...(ligandField?.flags ?? [])]),
     remarks: [...spectrum.remarks, ...(ligandField?.remarks ?? [])],
   }
 }

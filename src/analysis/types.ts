@@ -26,6 +26,8 @@ export interface LockedRecipe {
   readonly admissible: readonly Recipe[]
   /** One entry per component of the recipe, flanks included (role null). */
   readonly roles: readonly AssignedBand[]
+  /** What the assignment had to say, such as `ambiguous-assignment`. */
+  readonly flags: readonly Flag[]
 }
 
 export interface AnalysedBand {

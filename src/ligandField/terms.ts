@@ -11,13 +11,15 @@ export interface Term {
   readonly irrep: string
   /** Root of (multiplicity, irrep), from 1. */
   readonly index: number
+  /** Term of the free ion that it comes from, where the name of the transition says so: `F`, `P`, `D`. */
+  readonly parent?: string
 }
 
 export interface Transition {
   readonly role: string
   /** Upper terms that lie under the one band. */
   readonly upper: readonly Term[]
-  /** `4T2g`, `4A1g + 4Eg`, `4T2g(2)` for a second root. */
+  /** `4T2g`, `4A1g + 4Eg`, `4T1g(P)`; `1A1g(2)` for a second root without a name. */
   readonly label: string
   /** From the ground term without change of spin. */
   readonly allowed: boolean
@@ -36,11 +38,11 @@ export interface TermScheme {
   readonly jahnTeller: boolean
 }
 
-/** Upper terms as `T1`, `T1 2` (second root), `A1 + E`. */
+/** Upper terms as `T1`, `T1 2 P` (second root, from the P term), `A1 + E`. */
 type Row = readonly [ground: string, unpaired: number, upper: readonly string[], forbidden: readonly string[]]
 
-const A2_GROUND = ['T2', 'T1', 'T1 2']
-const T1_GROUND = ['T2', 'A2', 'T1 2']
+const A2_GROUND = ['T2', 'T1 1 F', 'T1 2 P']
+const T1_GROUND = ['T2', 'A2', 'T1 2 P']
 
 /** By the number of d electrons of the octahedral complex, high spin. Forbidden: one unpaired pair less. */
 const HIGH: Readonly<Record<number, Row>> = {
@@ -48,7 +50,7 @@ const HIGH: Readonly<Record<number, Row>> = {
   2: ['T1', 2, T1_GROUND, ['T2', 'E', 'A1', 'A1 2']],
   3: ['A2', 3, A2_GROUND, ['E', 'T1', 'T2', 'A1']],
   4: ['E', 4, ['T2'], ['T1']],
-  5: ['A1', 5, ['T1', 'T2', 'A1 + E', 'T2 2', 'E 2', 'T1 2'], []],
+  5: ['A1', 5, ['T1', 'T2', 'A1 + E', 'T2 2 D', 'E 2 D', 'T1 2 P'], []],
   6: ['T2', 4, ['E'], ['T1']],
   7: ['T1', 3, T1_GROUND, ['E', 'T1', 'T2', 'A1']],
   8: ['A2', 2, A2_GROUND, ['E', 'T2', 'A1', 'T1']],
@@ -60,12 +62,12 @@ const LOW: Readonly<Record<number, Row>> = {
 }
 
 const termOf = (text: string, multiplicity: number): Term => {
-  const [irrep, index] = text.split(' ')
-  return { multiplicity, irrep: irrep!, index: Number(index ?? 1) }
+  const [irrep, index, parent] = text.split(' ')
+  return { multiplicity, irrep: irrep!, index: Number(index ?? 1), ...(parent === undefined ? {} : { parent }) }
 }
 
-const sayTerm = ({ multiplicity, irrep, index }: Term, parity: string): string =>
-  `${multiplicity}${irrep}${parity}${index === 1 ? '' : `(${index})`}`
+const sayTerm = ({ multiplicity, irrep, index, parent }: Term, parity: string): string =>
+  `${multiplicity}${irrep}${parity}${parent === undefined ? (index === 1 ? '' : `(${index})`) : `(${parent})`}`
 
 /** High or low, where an octahedral complex of dⁿ can be both. */
 export const hasTwoSpins = (d: number, geometry: Geometry): boolean => geometry === 'octahedral' && d >= 4 && d <= 7

@@ -23,14 +23,14 @@ const roles = ({ bands }: Pick<Assignment, 'bands'>): readonly (string | null)[]
 
 // Maxima are those of published.ts or of the facts beside each case; heights are molar absorptions, in part from memory.
 describe('which band is which', () => {
-  it('hexaaquachromium: ν1 4T2g, ν2 4T1g, and a third in the ultraviolet 4T1g(2)', () => {
+  it('hexaaquachromium: ν1 4T2g, ν2 4T1g(F), and a third in the ultraviolet 4T1g(P)', () => {
     const two = assign('Cr3+', [
       [17400, 13],
       [24600, 15],
     ])
     expect(two.bands).toEqual([
       { role: 'nu1', term: '4T2g' },
-      { role: 'nu2', term: '4T1g' },
+      { role: 'nu2', term: '4T1g(F)' },
     ])
     expect(two.probability).toBeGreaterThan(0.7)
     expect(
