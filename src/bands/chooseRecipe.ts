@@ -100,7 +100,11 @@ const choose = (
       ? trial.firm && (isSeen(trial, seeds) || findMisfit(trial.recipe, joined) === 0)
       : bandCount(trial.recipe) === bands
   const best = scored.toSorted((a, b) => a.score - b.score).find(mayBeChosen)
-  if (!best) return none(spectra, `No recipe of ${bands ?? 'any number of'} bands describes the spectra.`)
+  if (!best)
+    return none(
+      spectra,
+      `No fit with ${bands ?? 'any number of'} bands is sensible: a band comes out without height, undetermined or unlike a d–d band.`,
+    )
   if (bandCount(best.recipe) === 0)
     return { kind: 'none', why: 'No band stands above noise and background.', flags: ['no-band'] }
   const others = scored

@@ -23,7 +23,7 @@ const unfitted = (spectrum: Spectrum, why: string, points: number, ...flags: Fla
 })
 
 /**
- * Fits the recipe, then the other admissible recipes for the model uncertainty. `uModelPerCm` is null where no other recipe is given.
+ * Fits the recipe, then the other admissible recipes for the model uncertainty. `uModelPerCm` is null where none is given.
  * Outcome `unfitted` where the spectrum is in disorder, has too few points, or no band stands above its noise.
  */
 export const fitBands: FitBands = (spectrum, recipe, admissible) => {
@@ -203,7 +203,8 @@ const flagsOf = (
 
 /**
  * Per component, how far its centre goes under the other admissible recipes: greatest distance / √3, the standard
- * uncertainty of a rectangular distribution (GUM 4.3.7). Null where there is no other recipe or the component is a flank.
+ * uncertainty of a rectangular distribution (GUM 4.3.7). 0 where no other recipe is
+ * admissible; null where none was given at all, or the component is a flank.
  */
 const modelSpreads = (recipe: Recipe, admissible: readonly Recipe[], points: Selection): readonly (number | null)[] => {
   const others = admissible.filter((other) => JSON.stringify(other) !== JSON.stringify(recipe))
@@ -216,7 +217,8 @@ const modelSpreads = (recipe: Recipe, admissible: readonly Recipe[], points: Sel
         )
       : []
   }
-  if (others.length === 0) return recipe.components.map(() => null)
+  if (others.length === 0)
+    return recipe.components.map(({ kind }) => (kind === 'band' && admissible.length > 0 ? 0 : null))
   const own = solveRecipe(recipe, joinNeighbours(points, recipe.misfit ?? 0, JOINED), ROUGH)
   const rivals = others.map(centres)
   return recipe.components.map(({ kind }, k) => {
@@ -227,6 +229,6 @@ const modelSpreads = (recipe: Recipe, admissible: readonly Recipe[], points: Sel
       const nearest = Math.min(...positions.map((p) => Math.abs(p - centre)))
       return nearest < width / 2 ? [nearest] : []
     })
-    return distances.length > 0 ? Math.max(...distances) / Math.sqrt(3) : null
+    return Math.max(0, ...distances) / Math.sqrt(3)
   })
 }

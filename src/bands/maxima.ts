@@ -40,7 +40,7 @@ const turningPoints = (points: Points, centre: number, range: number, reach: num
   const steps = 12
   const slopes = Array.from({ length: 2 * steps + 1 }, (_, k) => {
     const at = centre + ((k - steps) / steps) * range
-    const local = localPolynomial(points, at, reach, 2)
+    const local = localPolynomial(points, at, reach, 2) ?? localPolynomial(points, at, 2 * reach, 2)
     return { at, slope: local ? local.coefficients[1]! : Number.NaN }
   })
   return slopes.slice(1).flatMap(({ at, slope }, k) => {
@@ -58,7 +58,8 @@ export const curveMaximum = (points: Points, positionPerCm: number, widthPerCm: 
   if (turns.length === 0) return null
   let at = turns.reduce((best, t) => (Math.abs(t - positionPerCm) < Math.abs(best - positionPerCm) ? t : best))
   for (let round = 0; round < 8; round++) {
-    const local = localPolynomial(points, at, reach, DEGREE)
+    // Thinly measured curves: a parabola has to do.
+    const local = localPolynomial(points, at, reach, DEGREE) ?? localPolynomial(points, at, reach, 2)
     const v = local && vertex(local.coefficients)
     if (!local || v === null) return null
     at += v * reach

@@ -14,8 +14,8 @@ export interface Seed {
   readonly height: number
 }
 
-/** Half the stretch over which the curve is smoothed: a fraction of the narrowest d–d band. cm⁻¹ */
-const REACH_PER_CM = 700
+/** Half the stretch over which the curve is smoothed, cm⁻¹: a fraction of the narrowest band, and more for what is weak or thinly measured. */
+const REACHES_PER_CM = [700, 1400] as const
 const STEPS = 140
 /** Curvature counts when it exceeds this many standard uncertainties. */
 const SIGNIFICANT = 4
@@ -25,17 +25,25 @@ export const WIDEST_PER_CM = 7000
 /** Seeds below this share of the strongest are structure. */
 const WEAKEST = 0.03
 
-/** Strongest first. */
+/** Strongest first; the finer look wins where both see a band. */
 export const findSeeds = (points: Points): readonly Seed[] => {
+  const [fine, coarse] = REACHES_PER_CM.map((reach) => seedsAt(points, reach)) as [readonly Seed[], readonly Seed[]]
+  const isNew = (seed: Seed) =>
+    fine.every((other) => Math.abs(other.positionPerCm - seed.positionPerCm) > REACHES_PER_CM[1])
+  const seeds = [...fine, ...coarse.filter(isNew)].sort((a, b) => b.height - a.height)
+  return apart(seeds.filter((seed) => seed.height > WEAKEST * seeds[0]!.height))
+}
+
+const seedsAt = (points: Points, reachPerCm: number): readonly Seed[] => {
   const first = points.x[0]!
   const step = (points.x.at(-1)! - first) / STEPS
   const at = (k: number) => first + k * step
   const curvature = Array.from({ length: STEPS + 1 }, (_, k) => {
-    const local = localPolynomial(points, at(k), REACH_PER_CM, 2)
+    const local = localPolynomial(points, at(k), reachPerCm, 2)
     if (!local) return { value: 0, u: Infinity }
     return {
-      value: (2 * local.coefficients[2]!) / REACH_PER_CM ** 2,
-      u: (2 * Math.sqrt(local.covariance[8]!)) / REACH_PER_CM ** 2,
+      value: (2 * local.coefficients[2]!) / reachPerCm ** 2,
+      u: (2 * Math.sqrt(local.covariance[8]!)) / reachPerCm ** 2,
     }
   })
   const crossing = (k: number, direction: 1 | -1) => {
@@ -43,7 +51,7 @@ export const findSeeds = (points: Points): readonly Seed[] => {
     while (i > 0 && i < STEPS && curvature[i]!.value < 0) i += direction
     return Math.abs(i - k) * step
   }
-  const seeds = curvature.flatMap(({ value, u }, k): Seed[] => {
+  return curvature.flatMap(({ value, u }, k): Seed[] => {
     const isMinimum =
       k > 0 &&
       k < STEPS &&
@@ -55,8 +63,6 @@ export const findSeeds = (points: Points): readonly Seed[] => {
     const widthPerCm = Math.min(WIDEST_PER_CM, Math.max(NARROWEST_PER_CM, half * Math.sqrt(2 * FOUR_LN2)))
     return [{ positionPerCm: at(k), widthPerCm, height: (-value * widthPerCm ** 2) / (2 * FOUR_LN2) }]
   })
-  const strongest = Math.max(0, ...seeds.map((seed) => seed.height))
-  return apart(seeds.filter((seed) => seed.height > WEAKEST * strongest).sort((a, b) => b.height - a.height))
 }
 
 /** Keeps the stronger of two seeds that are closer than the narrowest band. */

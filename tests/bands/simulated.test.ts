@@ -104,6 +104,38 @@ describe('simulated spectra of two bands on constant and scatter, noise 0.001', 
     })
   })
 
+  it('a third band that hides between the two is found', () => {
+    const hidden: Truth = { ...steady, bands: [steady.bands[0]!, [20500, 2500, 0.05], steady.bands[1]!] }
+    const spectrum = simulate(hidden, 0.001, gaussianNoise(generator(4)))
+    const { components } = fittedWith(spectrum, chosen([spectrum]).recipe)
+    expect(components).toHaveLength(3)
+    components.forEach(({ positionPerCm, uPositionPerCm }, k) => {
+      expect(Math.abs(positionPerCm - hidden.bands[k]![0])).toBeLessThan(4 * uPositionPerCm!)
+    })
+  })
+
+  it('bands of a hundredth absorbance, and a spectrum read every 5 nm, are fitted too', () => {
+    const normal = gaussianNoise(generator(6))
+    const weak = { ...steady, bands: steady.bands.map(([p, w, h]) => [p, w, h / 50] as const) }
+    for (const spectrum of [simulate(weak, 0.001, normal), simulate(steady, 0.001, normal, [300, 900, 5])]) {
+      const { components } = fittedWith(spectrum, chosen([spectrum]).recipe)
+      expect(components).toHaveLength(2)
+      components.forEach(({ positionPerCm, uPositionPerCm }, k) => {
+        expect(Math.abs(positionPerCm - steady.bands[k]![0])).toBeLessThan(4 * uPositionPerCm!)
+      })
+    }
+  })
+
+  it('where the number of bands is told, it is kept, and hints are followed', () => {
+    const spectrum = simulate(steady, 0.001, gaussianNoise(generator(9)))
+    const hints = steady.bands.map(([positionPerCm]) => ({ positionPerCm: positionPerCm + 300, withinPerCm: 500 }))
+    for (const options of [{ bands: 2 }, { hints }]) {
+      const choice = chooseRecipe([spectrum], options)
+      if (choice.kind === 'none') throw new Error(choice.why)
+      expect(choice.recipe.components.map(({ kind }) => kind)).toEqual(['band', 'band'])
+    }
+  })
+
   it('a recipe survives being stored as JSON', () => {
     const { recipe } = chosen([simulate(steady, 0.001, gaussianNoise(generator(2)))])
     expect(JSON.parse(JSON.stringify(recipe))).toEqual(recipe)
