@@ -7,7 +7,8 @@ import Database from 'better-sqlite3'
 import { SMTPServer } from 'smtp-server'
 import { onTestFinished } from 'vitest'
 
-export const CLI = fileURLToPath(new URL('../../dist/cli.js', import.meta.url))
+/** The built command; another build may be named for trying things out. */
+export const CLI = process.env.TENDQ_CLI ?? fileURLToPath(new URL('../../dist/cli.js', import.meta.url))
 
 /** Deterministic noise: a small linear congruential generator and the sum of twelve uniforms. */
 export const noiseFrom = (seed: number): (() => number) => {
