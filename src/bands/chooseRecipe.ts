@@ -13,7 +13,7 @@ import type { Spectrum } from '../spectrum/types.ts'
 import { BACKGROUNDS, makeRecipe, OTHER_BACKGROUNDS } from './candidates.ts'
 import { findMisfit } from './misfit.ts'
 import { disorder, joinNeighbours, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
-import { apart, findSeeds, NARROWEST_PER_CM, type Seed, WIDEST_PER_CM } from './seeds.ts'
+import { apart, findSeeds, NARROWEST_PER_CM, type Seed, subsets, WIDEST_PER_CM } from './seeds.ts'
 import { componentAt } from './shapes.ts'
 import { ROUGH, type Solution, solveRecipe } from './solveRecipe.ts'
 import type { BackgroundTerm, BandHint, ChooseRecipe, Recipe, RecipeChoice } from './types.ts'
@@ -32,6 +32,7 @@ const ADMISSIBLE = 10
 /** The same where residuals are structure, whose effective number of points is known to a factor of two only. */
 const ADMISSIBLE_WITH_MISFIT = 20
 const MOST_ADMISSIBLE = 6
+const FEWEST_RIVALS = 2
 const NARROWEST_WINDOW_PER_CM = 3000
 
 interface Trial {
@@ -112,9 +113,9 @@ const choose = (
       (other) => other !== best && bandCount(other.recipe) > 0 && bandCount(other.recipe) >= bandCount(best.recipe),
     )
     .sort((a, b) => a.score - b.score)
-  const close = others
-    .filter((other) => other.score < best.score + (misfit > 0 ? ADMISSIBLE_WITH_MISFIT : ADMISSIBLE))
-    .slice(0, MOST_ADMISSIBLE)
+  const near = others.filter((other) => other.score < best.score + (misfit > 0 ? ADMISSIBLE_WITH_MISFIT : ADMISSIBLE))
+  // Where the recipe misses the noise, its positions depend on it, however far behind the next one is.
+  const close = near.length === 0 && misfit > 0 ? others.slice(0, FEWEST_RIVALS) : near.slice(0, MOST_ADMISSIBLE)
   const recipe = settle(best, full)
   return { kind: 'chosen', recipe, admissible: [recipe, ...close.map((other) => settle(other, joined))] }
 }
@@ -164,16 +165,6 @@ const variants = (trials: readonly Trial[], points: readonly Selection[], attemp
   )
   const tried = best ? everyBackground(bandPlaces(best), attempt, OTHER_BACKGROUNDS) : []
   return tried.filter((trial) => trial !== null)
-}
-
-/** Every choice of places that holds the hinted ones, or else the strongest; of `count` places where that is given. */
-const subsets = (seeds: readonly Seed[], hinted: number, count: number | undefined): readonly (readonly Seed[])[] => {
-  const certain = seeds.slice(0, Math.min(count ?? Infinity, Math.max(1, hinted)))
-  const rest = seeds.slice(certain.length)
-  const choices: (readonly Seed[])[] = certain.length > 0 ? [certain] : []
-  for (const seed of rest) choices.push(...choices.map((set) => [...set, seed]))
-  const wanted = Math.min(count ?? Infinity, seeds.length)
-  return count === undefined ? choices : choices.filter((set) => set.length === wanted)
 }
 
 /** Hinted places first, then what the curves show, strongest first. */

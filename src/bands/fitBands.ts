@@ -203,8 +203,8 @@ const flagsOf = (
 
 /**
  * Per component, how far its centre goes under the other admissible recipes: greatest distance / √3, the standard
- * uncertainty of a rectangular distribution (GUM 4.3.7). 0 where no other recipe is
- * admissible; null where none was given at all, or the component is a flank.
+ * uncertainty of a rectangular distribution (GUM 4.3.7). 0 where the recipe
+ * reaches the noise and no other is admissible; null where there is no other though it does not, and for a flank.
  */
 const modelSpreads = (recipe: Recipe, admissible: readonly Recipe[], points: Selection): readonly (number | null)[] => {
   const others = admissible.filter((other) => JSON.stringify(other) !== JSON.stringify(recipe))
@@ -217,8 +217,11 @@ const modelSpreads = (recipe: Recipe, admissible: readonly Recipe[], points: Sel
         )
       : []
   }
-  if (others.length === 0)
-    return recipe.components.map(({ kind }) => (kind === 'band' && admissible.length > 0 ? 0 : null))
+  if (others.length === 0) {
+    // A recipe that reaches the noise and has no rival has no spread; one that does not has an unknown one.
+    const isAlone = admissible.length > 0 && (recipe.misfit ?? 0) === 0
+    return recipe.components.map(({ kind }) => (kind === 'band' && isAlone ? 0 : null))
+  }
   const own = solveRecipe(recipe, joinNeighbours(points, recipe.misfit ?? 0, JOINED), ROUGH)
   const rivals = others.map(centres)
   return recipe.components.map(({ kind }, k) => {

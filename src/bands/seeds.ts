@@ -72,3 +72,17 @@ export const apart = (seeds: readonly Seed[]): readonly Seed[] => {
     if (kept.every((other) => Math.abs(other.positionPerCm - seed.positionPerCm) >= NARROWEST_PER_CM)) kept.push(seed)
   return kept
 }
+
+/** Every choice of places that holds the hinted ones, or else the strongest; of `count` places where that is given. */
+export const subsets = (
+  seeds: readonly Seed[],
+  hinted: number,
+  count: number | undefined,
+): readonly (readonly Seed[])[] => {
+  const certain = seeds.slice(0, Math.min(count ?? Infinity, Math.max(1, hinted)))
+  const rest = seeds.slice(certain.length)
+  const choices: (readonly Seed[])[] = certain.length > 0 ? [certain] : []
+  for (const seed of rest) choices.push(...choices.map((set) => [...set, seed]))
+  const wanted = Math.min(count ?? Infinity, seeds.length)
+  return count === undefined ? choices : choices.filter((set) => set.length === wanted)
+}
