@@ -94,7 +94,11 @@ const fitFile = (file: string, { context, instrument }: Setting, faults: Fault[]
   if (bytes === null) return []
   const reading = readSpectra(bytes, file, instrument?.reading ?? {})
   if (reading.kind === 'refused') faults.push(...reading.faults)
-  else for (const warning of reading.warnings) process.stderr.write(`${sayFault(warning)}\n`)
+  const warnings = [
+    ...(reading.kind === 'read' ? reading.warnings : []),
+    ...reading.spectra.flatMap((raw) => raw.warnings),
+  ]
+  for (const warning of warnings) process.stderr.write(`${sayFault(warning)}\n`)
   return reading.spectra.flatMap((raw) => {
     const outcome = analyse(raw, context, null)
     if (outcome.kind === 'analysed') return [{ name: file, raw, analysis: outcome.analysis }]
