@@ -33,15 +33,42 @@ interface WindowSqlRow {
   quantities: string
 }
 
+/** Columns that hold the value, or the uncertainty, of a name of the rule language. */
+const VALUES: Readonly<Record<string, string>> = {
+  delta_cm1: 'delta_o',
+  b_cm1: 'b',
+  c_cm1: 'c',
+  beta: 'beta',
+  nu1_cm1: 'nu1',
+  nu2_cm1: 'nu2',
+  nu3_cm1: 'nu3',
+  width1_cm1: 'width1',
+  width2_cm1: 'width2',
+  height1: 'height1',
+  height2: 'height2',
+  scatter: 'scatter',
+  extent: 'extent',
+  rms: 'rms',
+  noise: 'noise',
+  reduced_chi2: 'reduced_chi2',
+}
+const UNCERTAINTIES: Readonly<Record<string, string>> = {
+  u_delta_cm1: 'delta_o',
+  u_b_cm1: 'b',
+  u_c_cm1: 'c',
+  u_nu1_cm1: 'nu1',
+  u_nu2_cm1: 'nu2',
+  u_nu3_cm1: 'nu3',
+  u_extent: 'extent',
+}
+/** Columns that hold the wavelength of a band's maximum. */
+const MAXIMA: Readonly<Record<string, string>> = { max1_nm: 'nu1', max2_nm: 'nu2', max3_nm: 'nu3' }
+
 const COLUMNS = [
-  'spectrum, at, engine, config_sha256, study, species, recipe',
-  'delta_cm1, u_delta_cm1, b_cm1, u_b_cm1, c_cm1, u_c_cm1, beta',
-  'nu1_cm1, u_nu1_cm1, nu2_cm1, u_nu2_cm1, nu3_cm1, u_nu3_cm1',
-  'max1_nm, max2_nm, max3_nm, width1_cm1, width2_cm1, height1, height2',
-  'scatter, temperature, path, rms, noise, reduced_chi2, verdict, flags, quantities, body',
+  ...['spectrum', 'at', 'engine', 'config_sha256', 'study', 'species', 'recipe', 'temperature', 'path', 'verdict'],
+  ...['flags', 'quantities', 'body'],
+  ...[VALUES, UNCERTAINTIES, MAXIMA].flatMap(Object.keys),
 ]
-  .join(', ')
-  .split(', ')
 
 /** Not excluded by a person, not superseded by a longer version of its file. */
 const IN_STATISTICS = `
@@ -60,6 +87,12 @@ const windowRow = (row: WindowSqlRow): WindowRow => ({
   receivedAt: row.received_at,
   quantities: JSON.parse(row.quantities) as WindowRow['quantities'],
 })
+
+/** Of a split band the stronger half counts, as for the quantities of the rule language. */
+const maximumOf = ({ bands }: Analysis, role: string): number | null => {
+  const halves = bands.filter((band) => [role, `${role}a`, `${role}b`].includes(band.role ?? ''))
+  return halves.toSorted((a, b) => b.height - a.height)[0]?.maximumNm ?? null
+}
 
 /** Analyses of spectra; earlier ones stay, the newest of each spectrum counts. */
 export const analyses = (db: Db) => {
@@ -85,47 +118,26 @@ export const analyses = (db: Db) => {
 
   return {
     add: (row: NewAnalysis): void => {
-      const q = (name: string) => row.quantities[name] ?? [null, null]
-      const nm = (role: string) =>
-        row.analysis.bands.find((band) => band.role === role || band.role === `${role}a`)?.maximumNm ?? null
+      const { analysis, quantities } = row
+      const columns = (names: Readonly<Record<string, string>>, of: (name: string) => number | null) =>
+        Object.fromEntries(Object.entries(names).map(([column, name]) => [column, of(name)]))
       add.run({
         spectrum: row.spectrum,
         at: row.at,
-        engine: row.analysis.engine,
+        engine: analysis.engine,
         config_sha256: row.configSha256,
         study: row.study,
         species: row.species,
         recipe: row.recipe,
-        delta_cm1: q('delta_o')[0],
-        u_delta_cm1: q('delta_o')[1],
-        b_cm1: q('b')[0],
-        u_b_cm1: q('b')[1],
-        c_cm1: q('c')[0],
-        u_c_cm1: q('c')[1],
-        beta: q('beta')[0],
-        nu1_cm1: q('nu1')[0],
-        u_nu1_cm1: q('nu1')[1],
-        nu2_cm1: q('nu2')[0],
-        u_nu2_cm1: q('nu2')[1],
-        nu3_cm1: q('nu3')[0],
-        u_nu3_cm1: q('nu3')[1],
-        max1_nm: nm('nu1'),
-        max2_nm: nm('nu2'),
-        max3_nm: nm('nu3'),
-        width1_cm1: q('width1')[0],
-        width2_cm1: q('width2')[0],
-        height1: q('height1')[0],
-        height2: q('height2')[0],
-        scatter: q('scatter')[0],
         temperature: row.temperatureC,
         path: row.pathMm,
-        rms: q('rms')[0],
-        noise: q('noise')[0],
-        reduced_chi2: q('reduced_chi2')[0],
         verdict: row.verdict,
-        flags: JSON.stringify(row.analysis.flags),
-        quantities: JSON.stringify(row.quantities),
-        body: JSON.stringify(analysisJson(row.analysis)),
+        flags: JSON.stringify(analysis.flags),
+        quantities: JSON.stringify(quantities),
+        body: JSON.stringify(analysisJson(analysis)),
+        ...columns(VALUES, (name) => quantities[name]?.[0] ?? null),
+        ...columns(UNCERTAINTIES, (name) => quantities[name]?.[1] ?? null),
+        ...columns(MAXIMA, (role) => maximumOf(analysis, role)),
       })
     },
 
