@@ -9,6 +9,7 @@ import { setTimeout as sleep } from 'node:timers/promises'
 import { type Folder, openFolder } from './folder.ts'
 import { emptySurvey, type Survey, type Surveyor, surveyAll, surveySome } from './survey.ts'
 import { takeInOrder } from './take.ts'
+import { inTheirTurn } from './turn.ts'
 import type { FileTrouble, Intake, IntakeOptions, ScanReport, StartIntake, WaitingFile } from './types.ts'
 
 export type * from './types.ts'
@@ -72,7 +73,7 @@ export const startIntake: StartIntake = (instruments, ports, given = {}): Intake
 
   /** Takes what has settled, and orders the next look at what has not. */
   const conclude = async (survey: Survey): Promise<number> => {
-    const claimed = await takeInOrder(by, survey.settled)
+    const claimed = await takeInOrder(by, inTheirTurn(survey.settled))
     const next = nextDueMs()
     if (next < Number.POSITIVE_INFINITY) later('due', next - clock(), () => background(() => lookAtDue(false)))
     return claimed
