@@ -32,7 +32,9 @@ const settlingIn = ({ waiting }: Folder): Settling | null =>
     if (!isSettling(look)) return found
     const { mtimeMs } = look.mark
     const allDueMs = Math.max(found?.allDueMs ?? 0, look.dueMs)
-    return found === null || isBefore(mtimeMs, file, found) ? { mtimeMs, file, allDueMs } : { ...found, allDueMs }
+    return found === null || isBefore(mtimeMs, file, found)
+      ? { mtimeMs, file, allDueMs }
+      : { mtimeMs: found.mtimeMs, file: found.file, allDueMs }
   }, null)
 
 const isSettling = ({ dueMs, incomplete }: WaitingLook): boolean => !incomplete && dueMs < Number.POSITIVE_INFINITY
