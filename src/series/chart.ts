@@ -1,3 +1,4 @@
+import { NO_SUCCESSION, type Successive, succeed, widening } from './correlation.ts'
 import { CUSUM_START, type Cusum, cusumSignals, cusumStep } from './cusum.ts'
 import { type Ewma, ewmaLimit, ewmaStart, ewmaStep } from './ewma.ts'
 import { type Estimates, standardise, startEstimates, takeIn } from './selfStarting.ts'
@@ -14,6 +15,7 @@ export type ChartDesign =
 
 export interface ChartState {
   readonly estimates: Estimates
+  readonly successive: Successive
   /** Newest standardised values, as many as a Shewhart test looks back over. */
   readonly z: readonly number[]
   readonly cusum: Cusum
@@ -25,7 +27,7 @@ export interface ChartState {
 export interface ChartPoint {
   readonly signals: boolean
   readonly z: number
-  /** In the unit of the value. */
+  /** In the unit of the value, widened where successive occasions are correlated. */
   readonly sigma: number
   readonly target: number
   /** Figures of the chart itself, in σ: `C+`, `C-`, `EWMA`, `z`, each with its limit. */
@@ -34,6 +36,7 @@ export interface ChartPoint {
 
 export const startChart = (target: Estimates['target']): ChartState => ({
   estimates: startEstimates(target),
+  successive: NO_SUCCESSION,
   z: [],
   cusum: CUSUM_START,
   ewma: ewmaStart(0),
@@ -44,24 +47,22 @@ export const startChart = (target: Estimates['target']): ChartState => ({
 export const learn = (state: ChartState, x: number, u: number | null): ChartState => ({
   ...state,
   estimates: takeIn(state.estimates, x, u),
+  successive: succeed(state.successive, x),
 })
 
 /** One value further; as long as no σ is known the value is learnt and nothing is charted. */
 export const chartStep = (state: ChartState, design: ChartDesign, x: number, u: number | null): ChartState => {
   const standard = standardise(state.estimates, x, u)
   if (standard === null) return learn(state, x, u)
-  const { z, sigma } = standard
+  // A single point scatters by σ however correlated; sums and averages scatter by more.
+  const wider = design.chart === 'shewhart' ? 1 : widening(state.successive)
+  const z = standard.z / wider
   const zs = design.chart === 'shewhart' ? [...state.z.slice(1 - SHEWHART_MEMORY), z] : state.z
   const cusum = design.chart === 'cusum' ? cusumStep(state.cusum, z, 0, design.k) : state.cusum
   const ewma = design.chart === 'ewma' ? ewmaStep(state.ewma, z, design.lambda) : state.ewma
   const { signals, figures } = look(design, zs, cusum, ewma)
-  return {
-    estimates: signals ? state.estimates : takeIn(state.estimates, x, u),
-    z: zs,
-    cusum,
-    ewma,
-    newest: { signals, z, sigma, target: state.estimates.mean, figures },
-  }
+  const newest = { signals, z, sigma: standard.sigma * wider, target: state.estimates.mean, figures }
+  return { ...(signals ? state : learn(state, x, u)), z: zs, cusum, ewma, newest }
 }
 
 const look = (design: ChartDesign, z: readonly number[], cusum: Cusum, ewma: Ewma) => {
