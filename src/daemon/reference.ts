@@ -6,13 +6,13 @@ import { occasionsOfRows } from './occasions.ts'
 import type { Stations } from './pipeline.ts'
 import { occasionsNeeded } from './recipe.ts'
 
-/** Spectra at the most from which a reference that was refused is sought anew. */
-const SOUGHT = 200
+/** Spectra at the most that the first occasions are made of. */
+const MOST_SPECTRA = 200
 
 /**
  * What a sample is compared with, inside the transaction that judges it. The first n occasions under the locked
- * recipe become the reference and are frozen; where those have a slope it is refused and said so, and the newest n
- * are tried with each further occasion.
+ * recipe become the reference and are frozen. Where those have a slope the reference is refused and said so, for as
+ * long as nobody excludes or approves: later occasions would make the product of a decomposition its own reference.
  */
 export const referenceStateOf = (subject: Subject, stations: Stations): ReferenceState => {
   const { reference } = subject.study
@@ -31,21 +31,17 @@ const ofSample = (subject: Subject, stations: Stations): ReferenceState => {
   const need = occasionsNeeded(subject)
   if (recipe === null) return { kind: 'gathering', have: 0, need }
   const of = { sample, instrument: instrument.name, recipe: recipe.sha256, engine: ENGINE }
-  const rows = store.analyses.window(of, Number.MAX_SAFE_INTEGER, SOUGHT)
-  const occasions = occasionsOfRows(rows, subject, store)
+  const occasions = occasionsOfRows(store.analyses.earliest(of, MOST_SPECTRA), subject, store)
   if (!recipe.locked) return { kind: 'gathering', have: Math.min(occasions.length, need), need }
   // a reference sample that was asked for early is complete with what there is of it
   const n = subject.study.reference.kind === 'sample' ? Math.min(need, occasions.length) : need
   if (occasions.length < n || n === 0) return { kind: 'gathering', have: occasions.length, need: Math.max(n, 1) }
-  const chosen = [occasions.slice(0, n), occasions.slice(-n)].find((some) => referenceOf(some, n).kind === 'ready')
-  if (chosen === undefined) return referenceOf(occasions.slice(-n), n)
-  store.recipes.freezeReference(
-    sample,
-    instrument.name,
-    chosen.flatMap(({ spectra }) => spectra),
-    now(),
-  )
-  return referenceOf(chosen, n)
+  const state = referenceOf(occasions, n)
+  if (state.kind === 'ready') {
+    const spectra = occasions.slice(0, n).flatMap((occasion) => occasion.spectra)
+    store.recipes.freezeReference(sample, instrument.name, spectra, now())
+  }
+  return state
 }
 
 /** A frozen reference was found without a slope once; what a person excluded since is left out. */

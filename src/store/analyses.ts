@@ -106,6 +106,13 @@ export const analyses = (db: Db) => {
      WHERE s.sample = @sample AND s.instrument = @instrument AND s.measured_at <= @until
        AND a.recipe IS @recipe AND a.engine = @engine AND ${IN_STATISTICS}
      ORDER BY s.measured_at DESC, s.id DESC LIMIT @limit`)
+  const earliest = db.prepare<
+    { sample: string; instrument: string; recipe: string | null; engine: string; limit: number },
+    WindowSqlRow
+  >(`${WINDOW}
+     WHERE s.sample = @sample AND s.instrument = @instrument
+       AND a.recipe IS @recipe AND a.engine = @engine AND ${IN_STATISTICS}
+     ORDER BY s.measured_at, s.id LIMIT @limit`)
   const onInstrument = db.prepare<
     { instrument: string; engine: string; until: number; limit: number },
     WindowSqlRow
@@ -151,6 +158,12 @@ export const analyses = (db: Db) => {
         .all({ ...of, until, limit })
         .map(windowRow)
         .reverse(),
+
+    /** The same, but the sample's first `limit` spectra. */
+    earliest: (
+      of: { sample: string; instrument: string; recipe: string | null; engine: string },
+      limit: number,
+    ): readonly WindowRow[] => earliest.all({ ...of, limit }).map(windowRow),
 
     /** Newest `limit` spectra of an instrument up to a time, whatever the sample, oldest first. */
     windowOfInstrument: (
