@@ -3,7 +3,7 @@
 import { canBe, unitsByValue } from './axis.ts'
 import type { Surroundings } from './headings.ts'
 import type { AxisUnit, OrdinateKind, ReadingHints } from './types.ts'
-import { axisWords, factOf, ordinateKind, ordinateWords, plainWords } from './words.ts'
+import { axisWords, factOf, type OrdinateWords, ordinateKind, ordinateWords, plainWords } from './words.ts'
 
 export interface Complaint {
   readonly code: string
@@ -147,6 +147,12 @@ export interface Ordinate {
   readonly kind: OrdinateKind
 }
 
+const hintFor = (words: OrdinateWords): OrdinateKind => {
+  if (words.kind !== 'known') return 'absorbance'
+  const { quantity, percent } = words
+  return percent && (quantity === 'transmittance' || quantity === 'reflectance') ? `percent-${quantity}` : quantity
+}
+
 const quantityOfHint = (y: OrdinateKind): string => y.replace('percent-', '')
 
 /** The ordinate columns to take and their kinds. */
@@ -175,7 +181,7 @@ export const ordinatesOf = (
       code: 'which-ordinate',
       what,
       remedy: 'say which to take with `reading: { y: … }`',
-      settle: quantities.map((q) => ({ y: q as OrdinateKind })),
+      settle: known.map((c) => ({ y: hintFor(words.get(c)!) })),
     })
   }
   if (take.length === 0) {

@@ -301,8 +301,16 @@ const damagedHeading = (around: Surroundings): Complaint | null => {
 const cutShort = (table: Table, xColumn: number, column: number, file: string): Fault | null => {
   const digits = (row: Table['rows'][number]) => /[.,](\d*)$/.exec(row.cells[column]?.text ?? '')?.[1]?.length ?? 0
   const last = table.rows.at(-1)!
-  if (!table.unended || table.rows.length < 5 || column !== last.cells.length - 1 || column === xColumn) return null
+  if (!table.unended || table.rows.length < 5 || column !== table.columns - 1 || column === xColumn) return null
   const usual = digits(table.rows[0]!)
+  if (last.cells[column]!.text === '' && table.rows.at(-2)!.cells[column]!.text !== '') {
+    return {
+      code: 'cut-short',
+      place: { at: file, line: last.line, column: last.cells[column]!.column },
+      what: 'the last line has no ordinate and no line end: the file was cut short',
+      remedy: 'copy the file again when it is complete',
+    }
+  }
   if (digits(last) >= usual || !table.rows.slice(0, -1).every((row) => digits(row) === usual)) return null
   const what = `the last number "${last.cells[column]!.text}" has fewer digits than all others and no line end: the file was cut short`
   return {

@@ -50,14 +50,13 @@ const splits = (line: string, delimiter: Delimiter, columns: number): readonly s
   return null
 }
 
+/** A date, a time, a length or a temperature always holds a digit: `Time;Absorbance` is a line of headings, `Time;10:00` a fact. */
 const isFact = (cells: readonly string[]): boolean => {
-  const key = cells[0]!.replace(/\s*[:=]\s*$/, '')
-  const fact = factOf(key)
-  return (
-    /[:=]\s*$/.test(cells[0]!) ||
-    (fact !== null && cells.length === 2 && fact !== 'axis' && fact !== 'ordinate') ||
-    /^[^:=;]{1,40}[:=]\s*\S/.test(cells[0]!)
-  )
+  const [first, second] = [cells[0]!, cells[1] ?? '']
+  if (/[:=]\s*$/.test(first) || /^[^:=;]{1,40}[:=]\s*\S/.test(first)) return true
+  const fact = cells.length === 2 ? factOf(first) : null
+  if (fact === null || fact === 'axis' || fact === 'ordinate' || ordinateWords(second).kind === 'known') return false
+  return fact === 'sample' || fact === 'title' || fact === 'medium' || /\d/.test(second)
 }
 
 /** Splits what stands around a table into headings, notes and pairs. */

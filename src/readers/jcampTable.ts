@@ -118,7 +118,10 @@ export const pointsOf = (block: Block, table: JcampRecord, file: string): Points
   if (!pairs && delta && count.value > 1) {
     const step = (last!.value - first!.value) / (count.value - 1)
     const off = Math.abs(Math.abs(delta.value) - Math.abs(step))
-    if (off > Math.max(delta.unit, 1e-4 * Math.abs(step)) && off > (first!.unit + last!.unit) / (count.value - 1)) {
+    if (
+      off > Math.max(0.500001 * delta.unit, 1e-4 * Math.abs(step)) &&
+      off > (first!.unit + last!.unit) / (count.value - 1)
+    ) {
       return faulty(
         delta.line,
         'axis-contradiction',

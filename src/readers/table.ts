@@ -97,6 +97,9 @@ const isNumberCell = (cell: Cell, { delimiter, decimal }: Dialect): boolean =>
   // thousands marks made of blanks need another delimiter; a comma in a cell of a comma table needs quotes
   !(delimiter === ' ' && cell.text.includes(' ')) && numberOf(cell.text, decimal) !== null
 
+const delimiterShows = (cells: readonly Cell[], { delimiter }: Dialect): boolean =>
+  delimiter !== ' ' && cells[0]!.text !== ''
+
 /** A row of data: its first filled cell is a number, the others numbers or words for missing or overflow, at least two filled. */
 const isData = (cells: readonly Cell[], dialect: Dialect): boolean => {
   let filled = 0
@@ -107,7 +110,8 @@ const isData = (cells: readonly Cell[], dialect: Dialect): boolean => {
     if (isNumberCell(cell, dialect)) numbers++
     else if (filled === 1 || ordinateOfText(cell.text, dialect.decimal) === null) return false
   }
-  return filled >= 2 && numbers >= 1
+  // an ordinate left empty is missing, where a delimiter shows its place
+  return numbers >= 1 && (filled >= 2 || (cells.length >= 2 && delimiterShows(cells, dialect)))
 }
 
 /** Begins as a number does, and is not `key: value`: were it read as a note, a damaged row would vanish without a word. */
@@ -142,9 +146,7 @@ export const tableUnder = (lines: readonly Line[], dialect: Dialect): Table | nu
   }
   if (first < 0) return null
   const run = parsed.slice(first, last + 1)
-  const widths = run.map(({ cells }) => cells!.length)
-  const filled = Math.max(...run.map(({ cells }) => cells!.findLastIndex((cell) => cell.text !== '') + 1))
-  const columns = Math.min(Math.max(...widths), filled)
+  const columns = widthOf(run.map(({ cells }) => cells!))
   const outside = [...parsed.slice(0, first), ...parsed.slice(last + 1)]
   const broken = firstBreak(run, columns, dialect, parsed.slice(last + 1), parsed.slice(0, first))
   return {
@@ -159,6 +161,19 @@ export const tableUnder = (lines: readonly Line[], dialect: Dialect): Table | nu
   }
 }
 
+/** What most rows have of cells, empty ones at the end of every row not counted. */
+const widthOf = (rows: readonly (readonly Cell[])[]): number => {
+  const counts = new Map<number, number>()
+  for (const cells of rows) counts.set(cells.length, (counts.get(cells.length) ?? 0) + 1)
+  const [usual] = [...counts].reduce((a, b) => (b[1] > a[1] ? b : a))
+  const filled = Math.max(
+    ...rows
+      .filter((cells) => cells.length === usual)
+      .map((cells) => cells.findLastIndex(({ text }) => text !== '') + 1),
+  )
+  return Math.min(usual, Math.max(filled, 2))
+}
+
 type Parsed = { readonly line: Line; readonly cells: readonly Cell[] | null; readonly data: boolean }
 
 const firstBreak = (
@@ -170,16 +185,26 @@ const firstBreak = (
 ): Table['broken'] => {
   for (const { line, cells } of run) {
     // a row may only be shorter where it would have been empty: paired columns of unequal length write their delimiters
-    if (cells!.length < columns) {
+    if (cells!.length < columns || cells!.findLastIndex((cell) => cell.text !== '') >= columns) {
       const what = `${cells!.length} cells where the table has ${columns}`
       return { line: line.number, column: line.text.length + 1, code: 'row-length', what }
     }
   }
-  const suspects = [...after, ...before.filter(({ cells, line }) => isLikeRow(cells, line, dialect, columns))]
+  const suspects: readonly Parsed[] = [
+    ...after,
+    ...before.filter(({ cells, line }) => isLikeRow(cells, line, dialect, columns)),
+  ]
   for (const { line, cells, data } of suspects) {
     if (data)
       return { line: line.number, column: 1, code: 'second-table', what: 'a row of numbers apart from the table' }
-    if (cells === null || !resemblesData(line.text)) continue
+    if (!resemblesData(line.text)) continue
+    if (cells === null)
+      return {
+        line: line.number,
+        column: line.text.indexOf('"') + 1,
+        code: 'open-quote',
+        what: 'a quote is opened and not closed',
+      }
     const bad = cells.find(
       (cell, i) =>
         (i === 0 ? numberOf(cell.text, dialect.decimal) : ordinateOfText(cell.text, dialect.decimal)) === null,
