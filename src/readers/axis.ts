@@ -83,15 +83,19 @@ const loneEnd = (x: Float64Array, placeOf: (i: number) => Place): Fault | null =
   return null
 }
 
-/** Places inside where the axis jumps by more than 2.5 of the usual steps: points are missing there. One warning for all. */
+/**
+ * Places where an axis jumps by nearly two of its usual steps, or where one that is otherwise even is not: points are missing or
+ * misprinted there. One warning for all.
+ */
 export const gapWarnings = (x: Float64Array, unit: AxisUnit, placeOf: (i: number) => Place): readonly Fault[] => {
+  const steps = Float64Array.from({ length: Math.max(0, x.length - 1) }, (_, i) => Math.abs(x[i + 1]! - x[i]!))
+  const usual = Float64Array.from(steps).sort()[steps.length >> 1] ?? 0
+  const isUneven = (step: number) => Math.abs(step - usual) > 0.005 * usual
+  const even = steps.filter((step) => !isUneven(step)).length >= Math.min(0.8 * steps.length, steps.length - 1)
   const gaps: number[] = []
   for (let i = 1; i < x.length; i++) {
-    const step = Math.abs(x[i]! - x[i - 1]!)
-    const before = i > 1 ? Math.abs(x[i - 1]! - x[i - 2]!) : Infinity
-    const after = i < x.length - 1 ? Math.abs(x[i + 1]! - x[i]!) : Infinity
-    const usual = Math.min(before, after)
-    if (usual < Infinity && step > 1.9 * usual) gaps.push(i)
+    const near = Math.min(steps[i - 2] ?? Infinity, steps[i] ?? Infinity)
+    if ((even && isUneven(steps[i - 1]!)) || steps[i - 1]! > 1.9 * near) gaps.push(i)
   }
   const first = gaps[0]
   if (first === undefined) return []

@@ -136,6 +136,16 @@ export const pointsOf = (block: Block, table: JcampRecord, file: string): Points
         remedy: 'nothing to do; the axis is taken from FIRSTX and LASTX',
       })
   }
+  const step = count.value > 1 ? Math.abs(x[x.length - 1]! - x[0]!) / (count.value - 1) : 0
+  const byDelta = delta ? 0.5 * delta.unit * (count.value - 1) : Number.POSITIVE_INFINITY
+  if (!pairs && Math.min(raw.confirmed, byDelta) > step * 1.000001) {
+    warnings.push({
+      code: 'axis-unconfirmed',
+      place: { at: file, line: last!.line },
+      what: `nothing in the table confirms LASTX ${last!.value} to within a step`,
+      remedy: 'export with more lines, or with DELTAX',
+    })
+  }
   return {
     kind: 'points',
     x,
@@ -160,6 +170,8 @@ type RawPoints =
       readonly y: readonly number[]
       readonly lines: readonly number[]
       readonly forms: string
+      /** How far the last abscissa could be wrong for all that the lines say: nothing after the last line's own is written. */
+      readonly confirmed: number
     }
   | { readonly kind: 'faulty'; readonly fault: Fault }
 
@@ -185,6 +197,7 @@ const sequenceIn = (
   const lines: number[] = []
   const forms = new Set<string>()
   let check = false
+  let confirmed = Number.POSITIVE_INFINITY
   for (const { number, text } of table.body) {
     const decoded = decodeLine(text)
     if (decoded.kind === 'wrong') return faulty(number, decoded.column, 'bad-ordinate', decoded.what)
@@ -196,7 +209,9 @@ const sequenceIn = (
     const at = check ? y.length - 1 : y.length
     const expected = first.value + at * step
     const written = text.trim().match(/^[+-]?\d*\.?\d*/)![0]
-    const tolerance = Math.max(unitOf(written === '' ? '1' : written) * xFactor, 0.05 * Math.abs(step)) * 1.000001
+    // an abscissa is rounded where it ends
+    const tolerance = Math.max(0.5 * unitOf(written === '' ? '1' : written) * xFactor, 0.05 * Math.abs(step)) * 1.000001
+    confirmed = at > 0 ? (tolerance * (count.value - 1)) / at : Number.POSITIVE_INFINITY
     if (Math.abs(x * xFactor - expected) > tolerance) {
       const what = `the line begins at X = ${x * xFactor} where FIRSTX, LASTX and NPOINTS put point ${at + 1} at ${Number(expected.toPrecision(10))}`
       return faulty(number, xColumn, 'axis-contradiction', what)
@@ -217,7 +232,7 @@ const sequenceIn = (
       return faulty(number, 1, 'point-count', `the table holds more points than the ${count.value} of NPOINTS`)
     check = endsInDifference
   }
-  return { kind: 'raw', x: [], y, lines, forms: [...forms].join(' ') }
+  return { kind: 'raw', x: [], y, lines, forms: [...forms].join(' '), confirmed }
 }
 
 const pairsIn = (table: JcampRecord, file: string): RawPoints => {
@@ -252,7 +267,7 @@ const pairsIn = (table: JcampRecord, file: string): RawPoints => {
       lines.push(number)
     }
   }
-  return { kind: 'raw', x, y, lines, forms: 'AFFN pairs' }
+  return { kind: 'raw', x, y, lines, forms: 'AFFN pairs', confirmed: 0 }
 }
 
 /** FIRSTY, MINY, MAXY against the data. FIRSTY is found in published files in the table's own units too: both are accepted. */

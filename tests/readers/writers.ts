@@ -34,8 +34,14 @@ const line: Readonly<Record<Form, (y: readonly number[]) => string>> = {
   DIFDUP: (y) => dif(y, true),
 }
 
-/** A JCAMP-DX file of whole ordinates in units of 1e-5, `perLine` to a line. */
-export const writeJcamp = (x: readonly number[], y: readonly number[], form: Form, perLine: number): Uint8Array => {
+/** A JCAMP-DX file of whole ordinates in units of `yFactor`, `perLine` to a line. */
+export const writeJcamp = (
+  x: readonly number[],
+  y: readonly number[],
+  form: Form,
+  perLine: number,
+  yFactor = 1e-5,
+): Uint8Array => {
   const differs = form === 'DIF' || form === 'DIFDUP'
   const lines: string[] = []
   let check = false
@@ -52,11 +58,11 @@ export const writeJcamp = (x: readonly number[], y: readonly number[], form: For
     '##XUNITS= NANOMETERS',
     '##YUNITS= ABSORBANCE',
     '##XFACTOR= 1',
-    '##YFACTOR= 0.00001',
+    `##YFACTOR= ${yFactor}`,
     `##FIRSTX= ${x[0]}`,
     `##LASTX= ${x.at(-1)}`,
     `##NPOINTS= ${y.length}`,
-    `##FIRSTY= ${y[0]! * 1e-5}`,
+    `##FIRSTY= ${y[0]! * yFactor}`,
     '##XYDATA= (X++(Y..Y))',
   ]
   return new TextEncoder().encode(`${[...head, ...lines, '##END='].join('\n')}\n`)
