@@ -83,11 +83,23 @@ const choose = (
 ): RecipeChoice => {
   const joined = full.map((points) => joinNeighbours(points, 0, JOINED))
   const seeds = placesOf(joined, hints)
-  const richest = makeRecipe(seeds.slice(0, bands ?? MOST_SEEDS), true, BACKGROUNDS[1]!, windowPerCm, 'search')
-  const misfit = findMisfit(richest, joined)
+  const richest = seeds.slice(0, bands ?? MOST_SEEDS)
+  // a rich recipe may come to rest beside its best: the smallest of a few tells how far the spectra are from any
+  const misfit = Math.min(
+    ...BACKGROUNDS.flatMap((background) =>
+      [false, true].map((flank) => findMisfit(makeRecipe(richest, flank, background, windowPerCm, 'search'), joined)),
+    ),
+  )
   const points = joined.map((selection) => reweigh(selection, misfit))
-  const attempt: Attempt = (places, flank, background) =>
-    tryRecipe(makeRecipe(places, flank, background, windowPerCm, 'search'), points)
+  const attempt: Attempt = (places, flank, background) => {
+    const recipe = makeRecipe(places, flank, background, windowPerCm, 'search')
+    const solutions = solveAll(recipe, points)
+    if (!solutions) return null
+    // a flank that comes out empty leaves the bands in better places than they started from
+    if (flank && solutions.every(({ at }) => at.coefficients[places.length] === 0))
+      return attempt(bandPlaces({ recipe, solutions }), false, background)
+    return judged(recipe, solutions)
+  }
   const empty = BACKGROUNDS.flatMap((background) => [false, true].map((flank) => attempt([], flank, background)))
   const seeded = subsets(seeds.slice(0, MOST_SEEDS), hints.length, bands).flatMap((places) =>
     everyBackground(places, attempt),
@@ -113,12 +125,17 @@ const choose = (
       (other) => other !== best && bandCount(other.recipe) > 0 && bandCount(other.recipe) >= bandCount(best.recipe),
     )
     .sort((a, b) => a.score - b.score)
+    .filter((other, i, sorted) => !sorted.slice(0, i).some((better) => isSame(other, better)))
   const near = others.filter((other) => other.score < best.score + (misfit > 0 ? ADMISSIBLE_WITH_MISFIT : ADMISSIBLE))
   // Where the recipe misses the noise, its positions depend on it, however far behind the next one is.
   const close = near.length === 0 && misfit > 0 ? others.slice(0, FEWEST_RIVALS) : near.slice(0, MOST_ADMISSIBLE)
   const recipe = settle(best, full)
   return { kind: 'chosen', recipe, admissible: [recipe, ...close.map((other) => settle(other, joined))] }
 }
+
+/** Other starts that came to the same end. */
+const isSame = (one: Trial, other: Trial): boolean =>
+  one.recipe.name === other.recipe.name && Math.abs(one.chi2 - other.chi2) < 1e-3 * other.chi2
 
 type Place = Pick<Seed, 'positionPerCm' | 'widthPerCm'>
 type Attempt = (places: readonly Place[], flank: boolean, background: readonly BackgroundTerm[]) => Trial | null
@@ -144,14 +161,17 @@ const suggestions = (
 
 const bandCount = ({ components }: Recipe): number => components.filter(({ kind }) => kind === 'band').length
 
+/** Share of its width by which a band's place in the second derivative may be off where others lie on it. */
+const SHOULDER = 0.3
+
 /** Every band has a place of its own in the curve's second derivative. */
 const isSeen = (trial: Trial, seeds: readonly Seed[]): boolean => {
   let left = seeds
-  return bandPlaces(trial).every(({ positionPerCm }) => {
+  return bandPlaces(trial).every(({ positionPerCm, widthPerCm }) => {
     const distance = (seed: Seed) => Math.abs(seed.positionPerCm - positionPerCm)
     const own = left.toSorted((a, b) => distance(a) - distance(b))[0]
     left = left.filter((seed) => seed !== own)
-    return own !== undefined && distance(own) < NARROWEST_PER_CM
+    return own !== undefined && distance(own) < Math.max(NARROWEST_PER_CM, SHOULDER * widthPerCm)
   })
 }
 
@@ -186,14 +206,13 @@ const everyBackground = (
 ): readonly (Trial | null)[] =>
   backgrounds.flatMap((background) => [false, true].map((flank) => attempt(places, flank, background)))
 
+const solveAll = (recipe: Recipe, points: readonly Selection[]): readonly Solution[] | null => {
+  const solutions = points.map((selection) => solveRecipe(recipe, selection, ROUGH))
+  return solutions.every((solution) => solution !== null) ? solutions : null
+}
+
 /** Null where, in most of the spectra, a component comes out without height, as structure, beyond the data or undetermined. */
-const tryRecipe = (recipe: Recipe, points: readonly Selection[]): Trial | null => {
-  const solutions: Solution[] = []
-  for (const selection of points) {
-    const solution = solveRecipe(recipe, selection, ROUGH)
-    if (!solution) return null
-    solutions.push(solution)
-  }
+const judged = (recipe: Recipe, solutions: readonly Solution[]): Trial | null => {
   const uncertainties = solutions.map((solution) => uncertaintyOf(recipe, solution))
   const sensible = (determined: number) =>
     recipe.components.every((component, k) => {
@@ -252,7 +271,7 @@ const bestOf = (scored: readonly Scored[]): Scored | null =>
 
 const mean = (values: readonly number[]): number => values.reduce((sum, v) => sum + v, 0) / values.length
 
-const placeOf = ({ recipe, solutions }: Trial, k: number): Place => {
+const placeOf = ({ recipe, solutions }: Pick<Trial, 'recipe' | 'solutions'>, k: number): Place => {
   const shapes = solutions.map(({ parameters }) =>
     componentAt(recipe.components[k]!.kind, parameters[2 * k]!, parameters[2 * k + 1]!, recipe.windowPerCm[1]),
   )
@@ -262,7 +281,7 @@ const placeOf = ({ recipe, solutions }: Trial, k: number): Place => {
   }
 }
 
-const bandPlaces = (trial: Trial): readonly Place[] =>
+const bandPlaces = (trial: Pick<Trial, 'recipe' | 'solutions'>): readonly Place[] =>
   trial.recipe.components.flatMap(({ kind }, k) => (kind === 'band' ? [placeOf(trial, k)] : []))
 
 /** Where the residuals, smoothed over less than a band, rise above the curve; highest first. */
