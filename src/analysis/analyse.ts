@@ -176,7 +176,7 @@ const band = (
     role: kind === 'band' ? role : null,
     term: kind === 'band' ? term : null,
     positionPerCm,
-    uPositionPerCm: variance === null ? uPositionPerCm : Math.sqrt(variance),
+    uPositionPerCm: variance === null || uPositionPerCm === null ? null : Math.sqrt(variance),
     maximumPerCm,
     uMaximumPerCm: uMaximumPerCm === null ? null : Math.hypot(uMaximumPerCm, uAxis),
     maximumNm: maximumPerCm === null ? null : nmOfWavenumber(maximumPerCm, spectrum.medium),
@@ -188,7 +188,8 @@ const solve = (
   covariance: readonly (readonly number[])[],
   { ion, geometry, spin }: AnalysisContext,
 ): ParameterFit | null => {
-  const places = bands.flatMap(({ role }, i) => (role === null ? [] : [i]))
+  // a position that is held at its bound has no uncertainty, so it can't weigh in
+  const places = bands.flatMap(({ role, uPositionPerCm }, i) => (role === null || uPositionPerCm === null ? [] : [i]))
   if (places.length === 0) return null
   return solveParameters(
     ion,

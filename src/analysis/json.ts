@@ -6,7 +6,11 @@ const rounded = (value: number | null | undefined, digits: number): number | nul
 const significant = (value: number | null | undefined): number | null =>
   value === null || value === undefined || !Number.isFinite(value) ? null : Number(value.toPrecision(6))
 
-const bandJson = (band: AnalysedBand) => ({
+/** Height of what lies beyond the window (a charge-transfer flank) is extrapolated over decades: none is given. */
+const heightJson = ({ positionPerCm, height }: AnalysedBand, window: readonly [number, number] | null) =>
+  window !== null && (positionPerCm < window[0] || positionPerCm > window[1]) ? null : significant(height)
+
+const bandJson = (band: AnalysedBand, window: readonly [number, number] | null) => ({
   role: band.role,
   term: band.term,
   position_cm1: rounded(band.positionPerCm, 3),
@@ -17,7 +21,7 @@ const bandJson = (band: AnalysedBand) => ({
   maximum_nm: rounded(band.maximumNm, 4),
   width_cm1: rounded(band.widthPerCm, 3),
   u_width_cm1: rounded(band.uWidthPerCm, 3),
-  height: significant(band.height),
+  height: heightJson(band, window),
   u_height: significant(band.uHeight),
 })
 
@@ -27,7 +31,7 @@ export const analysisJson = (analysis: Analysis) => {
   return {
     points: fit.points,
     window_cm1: fit.windowPerCm === null ? null : fit.windowPerCm.map((edge) => rounded(edge, 3)),
-    bands: analysis.bands.map(bandJson),
+    bands: analysis.bands.map((band) => bandJson(band, fit.windowPerCm)),
     ligand_field:
       field === null
         ? null
