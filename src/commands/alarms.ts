@@ -1,8 +1,10 @@
 import { userInfo } from 'node:os'
 import type { Command } from 'commander'
 import { stepAlarm } from '../alarms/index.ts'
+import { parseQuantity } from '../config/index.ts'
 import { roomOf } from '../daemon/room.ts'
 import { EXIT, FaultError } from '../fault.ts'
+import { lifeOf, withLife } from '../store/alarms.ts'
 import { openStoreBeside, openStoreReadOnly, storeOn } from '../store/index.ts'
 import { printJson, printLine, usageFault } from './print.ts'
 import { printable } from './printable.ts'
@@ -10,6 +12,12 @@ import { printable } from './printable.ts'
 interface ListOptions {
   readonly json?: true
   readonly all?: true
+  readonly config?: string
+}
+
+interface DecisionOptions {
+  readonly by: string
+  readonly note: string
   readonly config?: string
 }
 
@@ -56,7 +64,38 @@ Example:
     .option('--note <text>', 'what you found or will do', '')
     .option('--config <folder>', 'configuration folder')
     .action((id: string, _: unknown, command: Command) =>
-      acknowledge(id, command.optsWithGlobals<{ by: string; note: string; config?: string }>()),
+      decide(id, 'acknowledge', command.optsWithGlobals<DecisionOptions>()),
+    )
+  alarms
+    .command('shelve')
+    .description('Silences the alarm for a time; it comes back by itself.')
+    .argument('<id>')
+    .requiredOption('--for <duration>', 'such as 8h or 2d, at most 30 days')
+    .requiredOption('--by <who>', 'your name')
+    .option('--note <text>', 'why', '')
+    .option('--config <folder>', 'configuration folder')
+    .action((id: string, _: unknown, command: Command) =>
+      shelve(id, command.optsWithGlobals<DecisionOptions & { for: string }>()),
+    )
+  alarms
+    .command('unshelve')
+    .description('Ends shelving before its time.')
+    .argument('<id>')
+    .requiredOption('--by <who>', 'your name')
+    .option('--note <text>', 'why', '')
+    .option('--config <folder>', 'configuration folder')
+    .action((id: string, _: unknown, command: Command) =>
+      decide(id, 'unshelve', command.optsWithGlobals<DecisionOptions>()),
+    )
+  alarms
+    .command('reset')
+    .description('Lets a latched alarm go back to normal, once its condition has cleared and it was acknowledged.')
+    .argument('<id>')
+    .requiredOption('--by <who>', 'your name')
+    .option('--note <text>', 'why', '')
+    .option('--config <folder>', 'configuration folder')
+    .action((id: string, _: unknown, command: Command) =>
+      decide(id, 'reset', command.optsWithGlobals<DecisionOptions>()),
     )
   for (const command of alarms.commands) command.exitOverride()
 }
@@ -136,45 +175,68 @@ const showAlarm = (text: string, options: ListOptions): void => {
   }
 }
 
-const acknowledge = (text: string, { by, note, config }: { by: string; note: string; config?: string }): void => {
+/** What a person decides about one alarm: a step of its life, an event, a row among the decisions. */
+const decide = (
+  text: string,
+  input: 'acknowledge' | 'shelve' | 'unshelve' | 'reset',
+  { by, note, config }: DecisionOptions,
+  shelvedUntil: number | null = null,
+): void => {
   const id = idOf(text)
   if (by.trim() === '')
-    throw usageFault('--by', 'an acknowledgement needs a name', `say for example --by ${userInfo().username}`)
+    throw usageFault('--by', 'a decision needs a name', `say for example --by ${userInfo().username}`)
   const store = storeOn(openStoreBeside(roomOf(config).config.dataFolder))
   try {
     store.atomically(() => {
       const alarm = store.alarms.get(id)
       if (alarm === null) throw noSuchAlarm(id)
-      const step = stepAlarm(
-        { state: alarm.state, active: alarm.active, consecutive: 0, latch: alarm.latch },
-        'acknowledge',
-        1,
-      )
-      if (step.kind === 'refused')
-        throw new FaultError(
-          [
-            {
-              code: 'alarm-state',
-              place: { at: `alarm ${id}` },
-              what: step.why,
-              remedy: `\`tendq alarms show ${id}\` tells its state`,
-            },
-          ],
-          EXIT.usage,
-        )
+      const step = stepAlarm(lifeOf(alarm), input, 1)
+      if (step.kind === 'refused') throw wrongState(id, step.why)
       const at = Date.now()
-      store.alarms.put({
-        ...alarm,
-        state: step.life.state,
-        active: step.life.active,
-        acknowledgedAt: at,
-        acknowledgedBy: by,
-      })
-      store.alarms.event(id, at, 'acknowledged', by, note)
-      store.records.decide(at, by, 'acknowledge', `alarm ${id}`, note)
+      const who = input === 'acknowledge' ? { acknowledgedAt: at, acknowledgedBy: by } : {}
+      store.alarms.put({ ...withLife({ ...alarm, shelvedUntil }, step.life), ...who })
+      store.alarms.event(id, at, DONE[input], by, note)
+      store.records.decide(at, by, input, `alarm ${id}`, note)
     })
-    printLine(`alarm ${id} acknowledged by ${by}`)
   } finally {
     store.close()
   }
+  const end = shelvedUntil === null ? '' : ` until ${new Date(shelvedUntil).toISOString()}`
+  printLine(`alarm ${id} ${DONE[input]} by ${by}${end}`)
+}
+
+const DONE = {
+  acknowledge: 'acknowledged',
+  shelve: 'shelved',
+  unshelve: 'unshelved',
+  reset: 'reset',
+} as const
+
+const wrongState = (id: number, why: string): FaultError =>
+  new FaultError(
+    [
+      {
+        code: 'alarm-state',
+        place: { at: `alarm ${id}` },
+        what: why,
+        remedy: `\`tendq alarms show ${id}\` tells its state`,
+      },
+    ],
+    EXIT.usage,
+  )
+
+/** Nothing is silent for ever. */
+const LONGEST_SHELVING_DAYS = 30
+const DAY_MS = 86_400_000
+
+const shelve = (text: string, options: DecisionOptions & { readonly for: string }): void => {
+  const reading = parseQuantity(options.for.replace(/^([\d.]+)\s*/, '$1 '), 'duration')
+  if (reading.kind === 'refused') throw usageFault('--for', `${options.for}: ${reading.what}`, reading.remedy)
+  if (reading.value <= 0 || reading.value > LONGEST_SHELVING_DAYS * DAY_MS)
+    throw usageFault(
+      '--for',
+      `${options.for} is not within 0 and ${LONGEST_SHELVING_DAYS} days`,
+      'say for example --for 8h',
+    )
+  decide(text, 'shelve', options, Date.now() + reading.value)
 }

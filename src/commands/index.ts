@@ -15,6 +15,8 @@ const COMMANDS: Readonly<Record<string, () => Promise<AddCommand>>> = {
   levels: async () => (await import('./levels.ts')).addLevels,
   history: async () => (await import('./history.ts')).addHistory,
   alarms: async () => (await import('./alarms.ts')).addAlarms,
+  exclude: async () => (await import('./exclude.ts')).addExclude,
+  restore: async () => (await import('./exclude.ts')).addRestore,
   status: async () => (await import('./status.ts')).addStatus,
   demo: async () => (await import('./demo.ts')).addDemo,
 }

@@ -52,7 +52,7 @@ const printHealth = (health: Health): void => {
     `spectra      ${health.spectra} stored, the last at ${health.last_stored_at ?? '–'}; ${health.pending} wait to be analysed`,
   )
   printLine(`letters      ${health.letters.waiting} wait, ${health.letters.failed} given up`)
-  printLine(`alarms       ${health.alarms} stand`)
+  printLine(`alarms       ${health.alarms} not back to normal`)
   list(
     'instruments',
     health.instruments.map(
@@ -66,6 +66,10 @@ const printHealth = (health: Health): void => {
       ({ instrument, file, received_at, reason }) =>
         `${received_at} ${printable(instrument)} ${printable(file)}: ${printable(reason ?? '')}`,
     ),
+  )
+  list(
+    'shelved, silent for a time',
+    health.shelved.map((alarm) => printable(alarm)),
   )
   list(
     'gathering a reference or history, no fault',

@@ -1,7 +1,7 @@
 import { stepAlarm } from '../alarms/index.ts'
 import type { CompiledRule, Judgement } from '../rules/types.ts'
 import type { Window } from '../series/types.ts'
-import type { AlarmKey, StoredAlarm } from '../store/alarms.ts'
+import { type AlarmKey, lifeOf, type StoredAlarm, withLife } from '../store/alarms.ts'
 import type { RuleSubject } from '../store/judgements.ts'
 import type { JustKept } from './judge.ts'
 import { addLetter } from './letter.ts'
@@ -73,6 +73,8 @@ export const moveAlarm = (
     state: 'normal',
     active: false,
     latch: definition.latch,
+    latched: false,
+    shelvedUntil: null,
     raisedAt: null,
     acknowledgedAt: null,
     acknowledgedBy: null,
@@ -87,19 +89,16 @@ export const moveAlarm = (
     store.alarms.put({ ...alarm, spectra: Math.max(spectra, alarm.spectra) })
     return
   }
-  const life = { state: alarm.state, active: alarm.active, consecutive: 0, latch: alarm.latch }
-  const step = stepAlarm(life, isActive ? 'rings' : 'clears', 1)
+  const step = stepAlarm(lifeOf(alarm), isActive ? 'rings' : 'clears', 1)
   if (step.kind === 'refused') return
   const at = now()
   const facts = factsNow()
   const message = messageOf(facts)
   const id = store.alarms.put({
-    ...alarm,
+    ...withLife(alarm, step.life),
     study: facts.study,
     priority: definition.priority,
     latch: definition.latch,
-    state: step.life.state,
-    active: step.life.active,
     raisedAt: isActive ? at : alarm.raisedAt,
     returnedAt: isActive ? null : at,
     acknowledgedAt: isActive ? null : alarm.acknowledgedAt,

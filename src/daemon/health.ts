@@ -35,6 +35,8 @@ export interface Health extends DaemonNote {
     readonly received_at: string
     readonly reason: string | null
   }[]
+  /** Alarms that a person has silenced for a time. */
+  readonly shelved: readonly string[]
   readonly gathering: readonly string[]
   readonly unknown_samples: readonly string[]
 }
@@ -100,6 +102,7 @@ export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
     letters,
     alarms: counts.alarms,
     set_aside: setAside,
+    shelved: shelved(db),
     gathering: gathering(db),
     unknown_samples: unknownSamples(db),
   }
@@ -131,6 +134,16 @@ const gathering = (db: Db): readonly string[] =>
          FROM spectrum s JOIN judgement j ON j.spectrum = s.id AND j.outcome = 'gathering'
         WHERE s.id IN (SELECT max(id) FROM spectrum WHERE sample IS NOT NULL GROUP BY sample, instrument)
         GROUP BY s.id ORDER BY s.sample LIMIT ?`,
+    )
+    .all(LISTED)
+    .map(({ line }) => line)
+
+const shelved = (db: Db): readonly string[] =>
+  db
+    .prepare<[number], { line: string }>(
+      `SELECT 'alarm ' || id || ' of ' || subject || ' (' || rule || ') until '
+              || strftime('%Y-%m-%dT%H:%M:%SZ', shelved_until / 1000, 'unixepoch') AS line
+         FROM alarm WHERE state = 'shelved' ORDER BY shelved_until LIMIT ?`,
     )
     .all(LISTED)
     .map(({ line }) => line)

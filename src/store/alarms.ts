@@ -1,4 +1,4 @@
-import type { AlarmState } from '../alarms/types.ts'
+import type { AlarmLife, AlarmState } from '../alarms/types.ts'
 import type { Priority } from '../config/types.ts'
 import type { Db } from './open.ts'
 
@@ -15,6 +15,10 @@ export interface StoredAlarm extends AlarmKey {
   readonly state: AlarmState
   readonly active: boolean
   readonly latch: boolean
+  /** Went silent while it waited for its reset. */
+  readonly latched: boolean
+  /** End of shelving; null when it is not shelved. */
+  readonly shelvedUntil: number | null
   readonly raisedAt: number | null
   readonly acknowledgedAt: number | null
   readonly acknowledgedBy: string | null
@@ -35,6 +39,8 @@ interface AlarmRow {
   state: string
   active: number
   latch: number
+  latched: number
+  shelved_until: number | null
   raised_at: number | null
   acknowledged_at: number | null
   acknowledged_by: string | null
@@ -55,6 +61,8 @@ const fromRow = (row: AlarmRow): StoredAlarm => ({
   state: row.state as AlarmState,
   active: row.active === 1,
   latch: row.latch === 1,
+  latched: row.latched === 1,
+  shelvedUntil: row.shelved_until,
   raisedAt: row.raised_at,
   acknowledgedAt: row.acknowledged_at,
   acknowledgedBy: row.acknowledged_by,
@@ -65,6 +73,24 @@ const fromRow = (row: AlarmRow): StoredAlarm => ({
   message: row.message,
 })
 
+/** What the alarm's transitions look at. */
+export const lifeOf = ({ state, active, latch, latched }: Omit<StoredAlarm, 'id'>): AlarmLife => ({
+  state,
+  active,
+  consecutive: 0, // rows of occasions are counted from the judgements
+  latch,
+  ...(latched ? { latched } : {}),
+})
+
+/** The alarm after a transition. */
+export const withLife = <Alarm extends Omit<StoredAlarm, 'id'>>(alarm: Alarm, life: AlarmLife): Alarm => ({
+  ...alarm,
+  state: life.state,
+  active: life.active,
+  latched: life.latched === true,
+  shelvedUntil: life.state === 'shelved' ? alarm.shelvedUntil : null,
+})
+
 /** The alarm list and the events that made it. State lives here and nowhere else. */
 export const alarmList = (db: Db) => {
   const byKey = db.prepare<[string, string, string], AlarmRow>(
@@ -73,13 +99,14 @@ export const alarmList = (db: Db) => {
   const byId = db.prepare<[number], AlarmRow>(`SELECT * FROM alarm WHERE id = ?`)
   const active = db.prepare<[], AlarmRow>(`SELECT * FROM alarm WHERE state <> 'normal' ORDER BY id`)
   const put = db.prepare(
-    `INSERT INTO alarm (rule, of, subject, study, priority, state, active, latch, raised_at, acknowledged_at,
+    `INSERT INTO alarm (rule, of, subject, study, priority, state, active, latch, latched, shelved_until, raised_at, acknowledged_at,
                         acknowledged_by, returned_at, spectra, diagnosis, confidence, message)
-     VALUES (@rule, @of, @subject, @study, @priority, @state, @active, @latch, @raised_at, @acknowledged_at,
+     VALUES (@rule, @of, @subject, @study, @priority, @state, @active, @latch, @latched, @shelved_until, @raised_at, @acknowledged_at,
              @acknowledged_by, @returned_at, @spectra, @diagnosis, @confidence, @message)
      ON CONFLICT (rule, of, subject) DO UPDATE SET
        study = excluded.study, priority = excluded.priority, state = excluded.state, active = excluded.active,
-       latch = excluded.latch, raised_at = excluded.raised_at, acknowledged_at = excluded.acknowledged_at,
+       latch = excluded.latch, latched = excluded.latched, shelved_until = excluded.shelved_until,
+       raised_at = excluded.raised_at, acknowledged_at = excluded.acknowledged_at,
        acknowledged_by = excluded.acknowledged_by, returned_at = excluded.returned_at, spectra = excluded.spectra,
        diagnosis = excluded.diagnosis, confidence = excluded.confidence, message = excluded.message
      RETURNING id`,
@@ -122,6 +149,8 @@ export const alarmList = (db: Db) => {
           state: alarm.state,
           active: alarm.active ? 1 : 0,
           latch: alarm.latch ? 1 : 0,
+          latched: alarm.latched ? 1 : 0,
+          shelved_until: alarm.shelvedUntil,
           raised_at: alarm.raisedAt,
           acknowledged_at: alarm.acknowledgedAt,
           acknowledged_by: alarm.acknowledgedBy,

@@ -120,6 +120,8 @@ describe('letters', () => {
       state: 'unacknowledged',
       active: true,
       latch: false,
+      latched: false,
+      shelvedUntil: null,
       raisedAt: 1,
       acknowledgedAt: null,
       acknowledgedBy: null,

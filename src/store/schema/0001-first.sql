@@ -136,6 +136,8 @@ CREATE TABLE alarm (
   state           TEXT NOT NULL,
   active          INTEGER NOT NULL,
   latch           INTEGER NOT NULL,
+  latched         INTEGER NOT NULL,
+  shelved_until   INTEGER,
   raised_at       INTEGER,
   acknowledged_at INTEGER,
   acknowledged_by TEXT,
