@@ -2,7 +2,7 @@ import { userInfo } from 'node:os'
 import type { Command } from 'commander'
 import { stepAlarm } from '../alarms/index.ts'
 import { parseQuantity } from '../config/index.ts'
-import { roomOf } from '../daemon/room.ts'
+import { dataPlaceOf } from '../daemon/room.ts'
 import { EXIT, FaultError } from '../fault.ts'
 import { lifeOf, withLife } from '../store/alarms.ts'
 import { openStoreBeside, openStoreReadOnly, storeOn } from '../store/index.ts'
@@ -101,7 +101,7 @@ Example:
 }
 
 const listAlarms = (options: ListOptions): void => {
-  const db = openStoreReadOnly(roomOf(options.config).config.dataFolder)
+  const db = openStoreReadOnly(dataPlaceOf(options.config).dataFolder)
   try {
     const rows = db
       .prepare<[number], AlarmRow>(
@@ -142,7 +142,7 @@ const noSuchAlarm = (id: number): FaultError =>
 
 const showAlarm = (text: string, options: ListOptions): void => {
   const id = idOf(text)
-  const db = openStoreReadOnly(roomOf(options.config).config.dataFolder)
+  const db = openStoreReadOnly(dataPlaceOf(options.config).dataFolder)
   try {
     const row = db.prepare<[number], AlarmRow>(`SELECT * FROM alarm_list WHERE id = ?`).get(id)
     if (row === undefined) throw noSuchAlarm(id)
@@ -185,7 +185,7 @@ const decide = (
   const id = idOf(text)
   if (by.trim() === '')
     throw usageFault('--by', 'a decision needs a name', `say for example --by ${userInfo().username}`)
-  const store = storeOn(openStoreBeside(roomOf(config).config.dataFolder))
+  const store = storeOn(openStoreBeside(dataPlaceOf(config).dataFolder))
   try {
     store.atomically(() => {
       const alarm = store.alarms.get(id)

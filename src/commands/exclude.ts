@@ -1,5 +1,5 @@
 import type { Command } from 'commander'
-import { roomOf } from '../daemon/room.ts'
+import { dataPlaceOf } from '../daemon/room.ts'
 import { EXIT, FaultError } from '../fault.ts'
 import { openStoreBeside, storeOn } from '../store/index.ts'
 import { printLine, usageFault } from './print.ts'
@@ -43,7 +43,7 @@ const decide = (what: 'exclude' | 'restore', text: string, { by, why, config }: 
     throw usageFault('SPECTRUM', `${text} is no number of a spectrum`, '`tendq history SAMPLE --json` shows them')
   for (const [option, value] of Object.entries({ '--by': by, '--why': why }))
     if (value.trim() === '') throw usageFault(option, 'it is empty', 'a decision is kept with who and why')
-  const store = storeOn(openStoreBeside(roomOf(config).config.dataFolder))
+  const store = storeOn(openStoreBeside(dataPlaceOf(config).dataFolder))
   try {
     store.atomically(() => {
       if (store.spectra.get(id) === null)

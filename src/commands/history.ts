@@ -1,6 +1,6 @@
 import type { Command } from 'commander'
 import { DateTime } from 'luxon'
-import { roomOf } from '../daemon/room.ts'
+import { dataPlaceOf } from '../daemon/room.ts'
 import { EXIT, FaultError } from '../fault.ts'
 import { openStoreReadOnly } from '../store/index.ts'
 import { stringify } from './csv.ts'
@@ -41,7 +41,7 @@ Example:
 }
 
 const showHistory = (sample: string, options: Options): void => {
-  const { config } = roomOf(options.config)
+  const config = dataPlaceOf(options.config)
   const since = timeOf('--since', options.since, config.timeZone)
   const until = timeOf('--until', options.until, config.timeZone)
   const db = openStoreReadOnly(config.dataFolder)

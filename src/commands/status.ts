@@ -1,6 +1,6 @@
 import type { Command } from 'commander'
 import { type Health, healthOf } from '../daemon/health.ts'
-import { roomOf } from '../daemon/room.ts'
+import { dataPlaceOf } from '../daemon/room.ts'
 import { EXIT } from '../fault.ts'
 import { openStoreReadOnly } from '../store/index.ts'
 import { exitWith, printJson, printLine } from './print.ts'
@@ -22,7 +22,7 @@ Example:
   tendq status --config /etc/tendq || echo "somebody should look"`,
     )
     .action((options: { json?: true; config?: string }) => {
-      const { config } = roomOf(options.config)
+      const config = dataPlaceOf(options.config)
       const db = openStoreReadOnly(config.dataFolder)
       try {
         const health = healthOf(db, config.dataFolder, Date.now())

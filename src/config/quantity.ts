@@ -86,7 +86,7 @@ const EXAMPLES: Readonly<Record<Dimension, string>> = {
   wavelength: '0.3 nm',
   wavenumber: '60 cm^-1',
   spectral: '512 nm',
-  number: '0.79',
+  number: '2',
 }
 
 const QUANTITY = /^([+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?)\s*(\S*)$/

@@ -21,7 +21,7 @@ export const runDaemon = async (configFolder: string): Promise<void> => {
     const reload = async (why: string): Promise<void> => {
       if (house.reload(why)) await house.takeIn({})
     }
-    stops.push(watchConfiguration(configFolder, () => void reload('a file of it was saved')))
+    stops.push(await watchConfiguration(configFolder, () => void reload('a file of it was saved')))
     const onHangUp = () => void reload('SIGHUP')
     process.on('SIGHUP', onHangUp)
     stops.push(() => void process.off('SIGHUP', onHangUp))
@@ -52,6 +52,9 @@ export const runOnce = async (configFolder: string): Promise<void> => {
   }
 }
 
+/** A watcher that is not ready by then works as soon as it is. */
+const READY_MS = 5_000
+
 const signalled = (): Promise<string> =>
   new Promise((resolve) => {
     process.once('SIGTERM', resolve)
@@ -59,7 +62,7 @@ const signalled = (): Promise<string> =>
   })
 
 /** Calls back when the folder was quiet for a moment after a change. Events are a hint; SIGHUP always works. */
-const watchConfiguration = (folder: string, changed: () => void): Stop => {
+const watchConfiguration = async (folder: string, changed: () => void): Promise<Stop> => {
   const watcher = watch(folder, { ignoreInitial: true })
   let latest = 0
   watcher.on('all', async () => {
@@ -69,5 +72,6 @@ const watchConfiguration = (folder: string, changed: () => void): Stop => {
     if (mine === latest) changed()
   })
   watcher.on('error', () => undefined)
+  await Promise.race([new Promise<void>((resolve) => watcher.once('ready', resolve)), wait(READY_MS)])
   return () => watcher.close()
 }

@@ -128,6 +128,25 @@ describe('the daemon', () => {
     expect(ended.stderr).not.toMatch(/ at .*\.js/)
   })
 
+  it('keeps the old configuration when a changed one is refused, says so, and takes the mended one', async () => {
+    const room = testRoom()
+    const daemon = await room.start()
+    const rules = room.read('rules/bands.yaml')
+    room.write('rules/bands.yaml', rules.replace('persist: 2', 'persist: two'))
+    await until('the refusal is noted', () => {
+      const [note] = room.rows<{ body: string }>('SELECT body FROM daemon_state')
+      return note?.body.includes('refused') === true
+    })
+    const refused = await room.run(['status'])
+    expect(refused.code).toBe(1)
+    expect(refused.stdout).toMatch(/the old one stays in force: .*bands\.yaml:\d+:\d+: /)
+    room.write('rules/bands.yaml', rules.replace('persist: 2', 'persist: 3'))
+    await until('the mended one is in force', () => room.rows('SELECT * FROM configurations').length === 2)
+    expect((await room.run(['status'])).code).toBe(0)
+    daemon.kill('SIGTERM')
+    expect(await exited(daemon)).toBe(0)
+  })
+
   it('finishes what a kill interrupted, and loses nothing', async () => {
     const room = testRoom()
     const daemon = await room.start()

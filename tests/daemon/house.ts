@@ -1,5 +1,5 @@
 import { type ChildProcess, spawn } from 'node:child_process'
-import { mkdirSync, mkdtempSync, rmSync, writeFileSync } from 'node:fs'
+import { mkdirSync, mkdtempSync, readFileSync, rmSync, writeFileSync } from 'node:fs'
 import { tmpdir } from 'node:os'
 import { dirname, join } from 'node:path'
 import { fileURLToPath } from 'node:url'
@@ -91,6 +91,8 @@ export interface TestRoom {
   /** Puts a file into the drop folder. */
   drop(name: string, text: string | Uint8Array): void
   write(name: string, text: string): void
+  /** Text of a configuration file. */
+  read(name: string): string
   /** Rows of a query on the database; none while it does not exist. */
   rows<T = Record<string, unknown>>(sql: string): T[]
   /** Makes every letter that waits due now. */
@@ -142,6 +144,7 @@ export const testRoom = (smtpPort = 9): TestRoom => {
     config,
     data,
     write,
+    read: (name) => readFileSync(join(config, name), 'utf8'),
     drop: (name, text) => {
       mkdirSync(dirname(join(folder, 'drop', name)), { recursive: true })
       writeFileSync(join(folder, 'drop', name), text)
