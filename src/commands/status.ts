@@ -51,6 +51,8 @@ const printHealth = (health: Health): void => {
   printLine(
     `spectra      ${health.spectra} stored, the last at ${health.last_stored_at ?? '–'}; ${health.pending} wait to be analysed`,
   )
+  if (health.repeated > 0)
+    printLine(`repeats      ${health.repeated} files of the last day held bytes that had come before`)
   printLine(`letters      ${health.letters.waiting} wait, ${health.letters.failed} given up`)
   printLine(`alarms       ${health.alarms} not back to normal`)
   list(

@@ -22,6 +22,8 @@ export interface Health extends DaemonNote {
   readonly spectra: number
   readonly last_stored_at: string | null
   readonly pending: number
+  /** Files of the last day that held bytes seen before: harmless copies, or an instrument that exports one spectrum again and again. */
+  readonly repeated: number
   readonly letters: {
     readonly waiting: number
     readonly failed: number
@@ -52,13 +54,14 @@ export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
   const note = noteOf(db)
   const recent = new Date(now - RECENT_MS).toISOString().slice(0, 19)
   const counts = db
-    .prepare<[], { spectra: number; pending: number; alarms: number; last: string | null }>(
+    .prepare<[string], { spectra: number; pending: number; repeated: number; alarms: number; last: string | null }>(
       `SELECT (SELECT count(*) FROM spectrum) AS spectra,
               (SELECT count(*) FROM intake WHERE outcome IS NULL) AS pending,
+              (SELECT count(*) FROM intake WHERE outcome = 'repeated' AND received_at >= ?) AS repeated,
               (SELECT count(*) FROM alarm WHERE state <> 'normal') AS alarms,
               (SELECT max(received_at) FROM intake WHERE outcome = 'stored') AS last`,
     )
-    .get()!
+    .get(recent)!
   const letters = db
     .prepare<[], Health['letters']>(
       `SELECT count(*) FILTER (WHERE t.state = 'waiting') AS waiting, count(*) FILTER (WHERE t.state = 'failed') AS failed,
@@ -99,6 +102,7 @@ export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
     spectra: counts.spectra,
     last_stored_at: counts.last,
     pending: counts.pending,
+    repeated: counts.repeated,
     letters,
     alarms: counts.alarms,
     set_aside: setAside,
