@@ -1,10 +1,10 @@
 import { stepAlarm } from '../alarms/index.ts'
+import type { AlarmFacts } from '../mail/types.ts'
 import type { CompiledRule, Judgement } from '../rules/types.ts'
 import type { Window } from '../series/types.ts'
 import { type AlarmKey, lifeOf, type StoredAlarm, withLife } from '../store/alarms.ts'
 import type { RuleSubject } from '../store/judgements.ts'
 import type { JustKept } from './judge.ts'
-import { addLetter } from './letter.ts'
 import type { Stations } from './pipeline.ts'
 import { factsOf, messageOf, type UntoldFacts } from './tell.ts'
 
@@ -25,11 +25,11 @@ export interface About {
 }
 
 /** Moves the alarm of a sample or instrument by one judgement: `persist` occasions in a row ring it, one clears it. */
-export const advanceAlarm = (judged: Judged, stations: Stations): void => {
+export const advanceAlarm = (judged: Judged, stations: Stations): AlarmFacts | null => {
   const { rule, judgement, occasion, kept, about } = judged
   const { store } = stations
   const { outcome } = judgement
-  if (outcome.kind === 'undecided') return
+  if (outcome.kind === 'undecided') return null
   const { name, persist } = rule.definition
   const key: AlarmKey = { rule: name, ...about }
   const on = kept.subject.instrument.name
@@ -43,7 +43,7 @@ export const advanceAlarm = (judged: Judged, stations: Stations): void => {
     outcome.kind === 'rings' ? was || row.length >= persist : outcome.kind === 'clears' && !isLate ? false : was
   if (is !== was) store.alarms.setWatch(key, on, is)
   const isActive = Object.entries({ ...before, [on]: is }).some(([, active]) => active)
-  moveAlarm(key, isActive, row.length, rule, stations, () => factsOf(judged, row, stations))
+  return moveAlarm(key, isActive, row.length, rule, stations, () => factsOf(judged, row, stations))
 }
 
 /** Occasions in a row, before this one, on which the rule rang; undecided ones neither add nor break. Newest first. */
@@ -56,7 +56,7 @@ const ringingBefore = (of: RuleSubject, occasion: number, { store }: Stations): 
 /** How far back a row of ringing occasions is counted. */
 const LONGEST_ROW = 1_000
 
-/** Takes the alarm's condition as true or false, and does what the alarm's life asks for: row, event, letter. */
+/** Takes the alarm's condition as true or false: row and event. Returns what is to be told, if anything is. */
 export const moveAlarm = (
   key: AlarmKey,
   isActive: boolean,
@@ -64,7 +64,7 @@ export const moveAlarm = (
   { definition }: CompiledRule,
   stations: Stations,
   factsNow: () => UntoldFacts,
-): void => {
+): AlarmFacts | null => {
   const { store, now } = stations
   const alarm: Omit<StoredAlarm, 'id'> = store.alarms.find(key) ?? {
     ...key,
@@ -84,13 +84,13 @@ export const moveAlarm = (
     confidence: null,
     message: definition.title,
   }
-  if (!isActive && !alarm.active) return
+  if (!isActive && !alarm.active) return null
   if (isActive && alarm.active) {
     store.alarms.put({ ...alarm, spectra: Math.max(spectra, alarm.spectra) })
-    return
+    return null
   }
   const step = stepAlarm(lifeOf(alarm), isActive ? 'rings' : 'clears', 1)
-  if (step.kind === 'refused') return
+  if (step.kind === 'refused') return null
   const at = now()
   const facts = factsNow()
   const message = messageOf(facts)
@@ -109,6 +109,8 @@ export const moveAlarm = (
     message: isActive ? message : alarm.message,
   })
   store.alarms.event(id, at, isActive ? 'raised' : 'returned', 'tendq', message)
-  if (step.notice === 'raised' || step.notice === 'returned' || step.notice === 're-alarmed')
-    addLetter({ ...facts, alarm: id, event: step.notice }, stations)
+  const { notice } = step
+  return notice === 'raised' || notice === 'returned' || notice === 're-alarmed'
+    ? { ...facts, alarm: id, event: notice }
+    : null
 }

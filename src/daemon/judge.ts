@@ -2,12 +2,14 @@ import type { Identity } from '../analysis/index.ts'
 import type { Analysis } from '../analysis/types.ts'
 import { ENGINE } from '../analysis/types.ts'
 import { ruleCovers } from '../config/index.ts'
-import type { CompiledRule, Judgement, Outcome } from '../rules/types.ts'
+import type { AlarmFacts } from '../mail/types.ts'
+import type { CompiledRule, Outcome } from '../rules/types.ts'
 import type { Standing, Window } from '../series/types.ts'
 import type { StoredArrival } from '../store/arrivals.ts'
 import type { JudgedAs } from '../store/judgements.ts'
 import { type About, advanceAlarm } from './alarm.ts'
 import type { Subject } from './context.ts'
+import { tellTogether } from './letter.ts'
 import { occasionsOfRows } from './occasions.ts'
 import type { Stations } from './pipeline.ts'
 import { referenceStateOf } from './reference.ts'
@@ -45,12 +47,16 @@ const judgeSample = (rules: readonly CompiledRule[], kept: JustKept, stations: S
   const measured = rules.filter(isMeasured)
   const window = windowOf(kept, measured, stations)
   const about = { of: 'sample', subject: kept.subject.sample } as const
-  const undecided = measured.flatMap((rule) => {
-    const { outcome } = settle(rule, window, kept, about, stations)
-    return outcome.kind === 'undecided' && outcome.because === 'missing' ? [rule.definition.name] : []
-  })
+  const settled = measured.map((rule) => settle(rule, window, kept, about, stations))
+  const undecided = measured.flatMap(({ definition }, i) => (settled[i]!.isMissing ? [definition.name] : []))
   const standing = { ...standingOf(kept), undecided }
-  for (const rule of rules.filter(isAlwaysOfSample)) settle(rule, { ...window, standing }, kept, about, stations)
+  const always = rules
+    .filter(isAlwaysOfSample)
+    .map((rule) => settle(rule, { ...window, standing }, kept, about, stations))
+  tellTogether(
+    [...settled, ...always].flatMap(({ told }) => told ?? []),
+    stations,
+  )
 }
 
 const judgeInstrument = (rules: readonly CompiledRule[], kept: JustKept, stations: Stations): void => {
@@ -58,7 +64,11 @@ const judgeInstrument = (rules: readonly CompiledRule[], kept: JustKept, station
   if (measured.length === 0) return
   const window = instrumentWindow(kept, measured, stations)
   const about = { of: 'instrument', subject: kept.subject.instrument.name } as const
-  for (const rule of measured) settle(rule, window, kept, about, stations)
+  const settled = measured.map((rule) => settle(rule, window, kept, about, stations))
+  tellTogether(
+    settled.flatMap(({ told }) => told ?? []),
+    stations,
+  )
 }
 
 const isMeasured = ({ definition: { condition } }: CompiledRule): boolean =>
@@ -116,8 +126,14 @@ const standingOf = ({ analysis, subject }: JustKept): Omit<Standing, 'undecided'
   expected: subject.species.bands,
 })
 
+interface Settled {
+  /** Undecided for another reason than that history is still being gathered. */
+  readonly isMissing: boolean
+  readonly told: AlarmFacts | null
+}
+
 /** Judges, writes down the judgement, and moves the alarm. */
-const settle = (rule: CompiledRule, window: Window, kept: JustKept, about: About, stations: Stations): Judgement => {
+const settle = (rule: CompiledRule, window: Window, kept: JustKept, about: About, stations: Stations): Settled => {
   const { store, now } = stations
   const judgement = rule.judge(window)
   const occasion = window.occasions.at(-1)?.at ?? kept.identity.measuredAt
@@ -130,8 +146,11 @@ const settle = (rule: CompiledRule, window: Window, kept: JustKept, about: About
     evidence: judgement.evidence,
     at: now(),
   })
-  advanceAlarm({ rule, judgement, occasion, window, kept, about }, stations)
-  return judgement
+  const { outcome } = judgement
+  return {
+    isMissing: outcome.kind === 'undecided' && outcome.because === 'missing',
+    told: advanceAlarm({ rule, judgement, occasion, window, kept, about }, stations),
+  }
 }
 
 const judgedAs = (outcome: Outcome): JudgedAs =>

@@ -2,6 +2,7 @@ import { createHash } from 'node:crypto'
 import { composeLetter } from '../mail/index.ts'
 import type { AlarmFacts } from '../mail/types.ts'
 import type { Stations } from './pipeline.ts'
+import { messageOf } from './tell.ts'
 
 /** Adds a letter to the people of the study, or to the room's keeper where there is none, or to `to`. Inside the outcome's transaction. */
 export const addLetter = (facts: AlarmFacts, { store, room, now }: Stations, to?: readonly string[]): void => {
@@ -17,4 +18,22 @@ export const addLetter = (facts: AlarmFacts, { store, room, now }: Stations, to?
     return `<tendq.${letter}.${at.toString(36)}.${who}@${domain}>`
   }
   store.letters.add({ alarm: facts.alarm, facts, subject: composeLetter(facts).subject }, recipients, at, messageId)
+}
+
+const URGENCY = { high: 2, medium: 1, low: 0 } as const
+
+/**
+ * One spectrum often rings several rules for one cause. What rings (or returns) together for one subject goes into one
+ * letter: that of the most urgent rule, which names the others.
+ */
+export const tellTogether = (told: readonly AlarmFacts[], stations: Stations): void => {
+  for (const isReturn of [false, true]) {
+    const [first, ...others] = told
+      .filter(({ event }) => (event === 'returned') === isReturn)
+      .toSorted((a, b) => URGENCY[b.priority] - URGENCY[a.priority] || a.alarm - b.alarm)
+    if (first === undefined) continue
+    addLetter({ ...first, also: others.map((other) => `${messageOf(other)} (alarm ${other.alarm})`) }, stations)
+    for (const { alarm } of others)
+      stations.store.alarms.event(alarm, stations.now(), 'told', 'tendq', `in the letter of alarm ${first.alarm}`)
+  }
 }

@@ -3,6 +3,7 @@ import type { Study } from '../config/types.ts'
 import { judgeOverdue, judgeOverdueSchedule } from '../rules/index.ts'
 import type { CompiledRule, Outcome } from '../rules/types.ts'
 import { moveAlarm } from './alarm.ts'
+import { addLetter } from './letter.ts'
 
 import type { Stations } from './pipeline.ts'
 import { ruleText, type UntoldFacts } from './tell.ts'
@@ -69,9 +70,10 @@ const move = (
 ): void => {
   if (outcome.kind !== 'rings' && outcome.kind !== 'clears') return
   const key = { rule: rule.definition.name, of, subject }
-  moveAlarm(key, outcome.kind === 'rings', 0, rule, stations, () =>
+  const told = moveAlarm(key, outcome.kind === 'rings', 0, rule, stations, () =>
     overdueFacts(rule, of, subject, lastReceivedAt, study, stations),
   )
+  if (told !== null) addLetter(told, stations)
 }
 
 const overdueFacts = (

@@ -43,6 +43,7 @@ const composeAlarm = (facts: AlarmFacts): LetterText =>
       paragraph(`${oneLine(facts.ruleTitle)} (${oneLine(facts.rule, 80)}). It rings when this holds:`),
       command(oneLine(facts.ruleText, 1000)),
     ]),
+    ...section('At the same time', listOf(facts.also ?? [])),
     ...section('Likely cause', causeOf(facts)),
     ...section('Check first', listOf(facts.check)),
     ...section('Cautions', listOf(facts.cautions)),

@@ -33,6 +33,8 @@ export interface AlarmFacts {
   readonly check: readonly string[]
   readonly cautions: readonly string[]
   readonly file: string | null
+  /** Other alarms of the same subject that the same spectrum rang, a line each. */
+  readonly also?: readonly string[]
 }
 
 export interface TestFacts {

@@ -49,6 +49,32 @@ describe('the daemon', () => {
     expect(await exited(daemon)).toBe(0)
   })
 
+  it('writes one letter for one cause, also when several rules ring on the same spectrum', async () => {
+    const mail = await mailReceiver()
+    const room = testRoom(mail.port)
+    const rules = room.read('rules/bands.yaml')
+    room.write(
+      'rules/bands.yaml',
+      `${rules}  - rule: second-band-shift
+    title: Second band has moved
+    of: sample
+    studies: [ "*" ]
+    when: "abs(nu2 - reference(nu2)) > 60 cm^-1"
+    persist: 2
+    priority: low
+`,
+    )
+    for (let i = 0; i < 3; i++) room.drop(nameAt('AGE-1', i * 6), converted(0, i))
+    await room.run(['run', '--once'])
+    for (let i = 3; i < 5; i++) room.drop(nameAt('AGE-1', i * 6), converted(0.3, i))
+    await room.run(['run', '--once'])
+    expect(room.rows('SELECT * FROM alarm_list')).toHaveLength(2)
+    expect(mail.letters).toHaveLength(1)
+    expect(mail.letters[0]).toContain('High priority')
+    expect(mail.letters[0]).toContain('AT THE SAME TIME')
+    expect(mail.letters[0]).toContain('Second band has moved')
+  })
+
   it('sets a broken file aside with its reason and goes on', async () => {
     const room = testRoom()
     room.drop('AGE-2_20260302T0900.csv', 'wavelength (nm),absorbance\n400,0.1\n401,nonsense\n402,0.2\n')
