@@ -1,5 +1,5 @@
 /** Flaws along the axis that are said but change nothing: places where points are missing, a step where the lamp changes. */
-import { median } from './noise.ts'
+import { median, usedPlaces } from './noise.ts'
 
 /** Indices i with a hole between i and i + 1: more than 2.5 times the wider of the usual spacings on either side. */
 export const findGaps = (x: Float64Array): readonly number[] => {
@@ -25,40 +25,53 @@ export const findSteps = (
   used: Uint8Array,
   noise: Float64Array,
 ): readonly number[] => {
-  const index = [...used.keys()].filter((i) => used[i] === 1)
+  const index = usedPlaces(used)
   const jump = new Float64Array(index.length)
   for (let k = 4; k < index.length - 5; k++) {
     const middle = (x[index[k]!]! + x[index[k + 1]!]!) / 2
-    jump[k] = Math.abs(
-      lineAt(x, y, index.slice(k - 4, k + 1), middle) - lineAt(x, y, index.slice(k + 1, k + 6), middle),
-    )
+    jump[k] = Math.abs(lineAt(x, y, index, middle, k - 4, k + 1) - lineAt(x, y, index, middle, k + 1, k + 6))
+  }
+  const largestIn = (from: number, to: number): number => {
+    let largest = 0
+    for (let k = from; k < to; k++) largest = Math.max(largest, jump[k]!)
+    return largest
   }
   const steps: number[] = []
   for (let k = 4; k < index.length - 5; k++) {
     const i = index[k]!
-    // a step spreads over five places on either side of itself; beyond them is the curve's own bend
-    const around = [
-      ...jump.slice(Math.max(4, k - 15), Math.max(4, k - 5)),
-      ...jump.slice(k + 6, Math.min(index.length - 5, k + 16)),
-    ]
-    if (around.length < 5) continue
-    const largest = Math.max(...jump.slice(Math.max(0, k - 5), k + 6))
+    if (!(jump[k]! > 8 * 1.05 * noise[i]! && jump[k]! > 0.002)) continue
     const direct = Math.abs(y[index[k + 1]!]! - y[i]!)
-    if (jump[k]! < largest || direct < 0.6 * jump[k]!) continue
-    if (jump[k]! > 8 * 1.05 * noise[i]! && jump[k]! > 0.002 && jump[k]! > 6 * Math.max(...around)) steps.push(i)
+    if (direct < 0.6 * jump[k]! || jump[k]! < largestIn(Math.max(0, k - 5), k + 6)) continue
+    // a step spreads over five places on either side of itself; beyond them is the curve's own bend
+    const below = [Math.max(4, k - 15), Math.max(4, k - 5)] as const
+    const above = [Math.min(index.length - 5, k + 6), Math.min(index.length - 5, k + 16)] as const
+    if (below[1] - below[0] + above[1] - above[0] < 5) continue
+    if (jump[k]! > 6 * Math.max(largestIn(...below), largestIn(...above))) steps.push(i)
   }
   return steps
 }
 
-/** Straight line by least squares through these points, at one abscissa. */
-export const lineAt = (x: Float64Array, y: Float64Array, index: readonly number[], at: number): number => {
-  const mx = index.reduce((sum, i) => sum + x[i]!, 0) / index.length
-  const my = index.reduce((sum, i) => sum + y[i]!, 0) / index.length
+/** Straight line by least squares through the points `from` (included) to `to` (not) of `index`, at one abscissa. */
+export const lineAt = (
+  x: Float64Array,
+  y: Float64Array,
+  index: ArrayLike<number>,
+  at: number,
+  from = 0,
+  to = index.length,
+): number => {
+  let mx = 0
+  let my = 0
+  for (let k = from; k < to; k++) {
+    mx += x[index[k]!]! / (to - from)
+    my += y[index[k]!]! / (to - from)
+  }
   let sxx = 0
   let sxy = 0
-  for (const i of index) {
-    sxx += (x[i]! - mx) ** 2
-    sxy += (x[i]! - mx) * (y[i]! - my)
+  for (let k = from; k < to; k++) {
+    const dx = x[index[k]!]! - mx
+    sxx += dx * dx
+    sxy += dx * (y[index[k]!]! - my)
   }
   return my + (sxy / sxx) * (at - mx)
 }

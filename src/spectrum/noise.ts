@@ -16,27 +16,43 @@ export const NOISE_FLOOR = 1e-6
 /** Difference from the cubic through the neighbours, scaled to the noise of a single point; NaN where there are too few. */
 export const roughness = (x: Float64Array, y: Float64Array, used: Uint8Array): Float64Array => {
   const r = new Float64Array(x.length).fill(Number.NaN)
-  const index: number[] = []
-  for (let i = 0; i < x.length; i++) if (used[i] === 1) index.push(i)
+  const index = usedPlaces(used)
   if (index.length < 5) return r
-  for (let k = 0; k < index.length; k++) {
-    // at the ends the four neighbours stand on one side or unevenly: extrapolation, its variance is in the scale
-    const from = Math.min(Math.max(k - 2, 0), index.length - 5)
-    const i = index[k]!
-    let predicted = 0
-    let variance = 1
-    for (let a = from; a < from + 5; a++) {
-      if (a === k) continue
-      let w = 1
-      for (let b = from; b < from + 5; b++) {
-        if (b !== a && b !== k) w *= (x[i]! - x[index[b]!]!) / (x[index[a]!]! - x[index[b]!]!)
-      }
-      predicted += w * y[index[a]!]!
-      variance += w * w
-    }
-    r[i] = (y[i]! - predicted) / Math.sqrt(variance)
-  }
+  for (let k = 0; k < index.length; k++) r[index[k]!] = roughnessAt(x, y, index, k)
   return r
+}
+
+/** Places of the points that are used, ascending. */
+export const usedPlaces = (used: Uint8Array): Int32Array => {
+  const places = new Int32Array(used.length)
+  let count = 0
+  for (let i = 0; i < used.length; i++) if (used[i] === 1) places[count++] = i
+  return places.subarray(0, count)
+}
+
+/** The same for the `k`-th of the places in `index`, of which there are at least five. */
+export const roughnessAt = (x: Float64Array, y: Float64Array, index: Int32Array, k: number): number => {
+  // at the ends the four neighbours stand on one side or unevenly: extrapolation, its variance is in the scale
+  const from = Math.min(Math.max(k - 2, 0), index.length - 5)
+  const i = index[k]!
+  let predicted = 0
+  let variance = 1
+  for (let a = from; a < from + 5; a++) {
+    if (a === k) continue
+    const xa = x[index[a]!]!
+    let above = 1
+    let below = 1
+    for (let b = from; b < from + 5; b++) {
+      if (b === a || b === k) continue
+      const xb = x[index[b]!]!
+      above *= x[i]! - xb
+      below *= xa - xb
+    }
+    const w = above / below
+    predicted += w * y[index[a]!]!
+    variance += w * w
+  }
+  return (y[i]! - predicted) / Math.sqrt(variance)
 }
 
 /** Local standard deviation of every point, never below `floor`. `half` is the half window in points. */
@@ -85,26 +101,47 @@ export const localNoise = (
 
 /** 10^ΔA, held within a factor of ten: one window never explains more than that by absorbance alone. */
 const growth = (difference: number): number =>
-  Number.isFinite(difference) ? 10 ** Math.min(Math.max(difference, -1), 1) : 1
+  Number.isFinite(difference) ? Math.exp(Math.LN10 * Math.min(Math.max(difference, -1), 1)) : 1
 
 /** Median over the used points within `half` places; makes the growth follow the curve, not the noise on it. */
 const movingMedian = (y: Float64Array, used: Uint8Array, half: number): Float64Array => {
   const out = new Float64Array(y.length)
-  const near: number[] = []
+  const near = new Float64Array(2 * half + 1)
   for (let i = 0; i < y.length; i++) {
-    near.length = 0
-    for (let k = Math.max(0, i - half); k <= Math.min(y.length - 1, i + half); k++) if (used[k] === 1) near.push(y[k]!)
-    out[i] = near.length > 0 ? median(Float64Array.from(near)) : Number.NaN
+    let count = 0
+    for (let k = Math.max(0, i - half); k <= Math.min(y.length - 1, i + half); k++)
+      if (used[k] === 1) near[count++] = y[k]!
+    out[i] = median(near.subarray(0, count))
   }
   return out
 }
 
-/** Median; sorts a copy. NaN of nothing. */
+/** Up to here sorting by insertion is quicker than the engine's sort. */
+const FEW = 64
+const scratch = new Float64Array(FEW)
+
+/** Median, of a copy; NaN of nothing. */
 export const median = (values: Float64Array): number => {
-  const sorted = Float64Array.from(values).sort()
-  const half = sorted.length >> 1
-  if (sorted.length === 0) return Number.NaN
-  return sorted.length % 2 === 1 ? sorted[half]! : (sorted[half - 1]! + sorted[half]!) / 2
+  const n = values.length
+  if (n === 0) return Number.NaN
+  const sorted = n <= FEW ? insertionSorted(values) : Float64Array.from(values).sort()
+  const half = n >> 1
+  return n % 2 === 1 ? sorted[half]! : (sorted[half - 1]! + sorted[half]!) / 2
+}
+
+const insertionSorted = (values: Float64Array): Float64Array => {
+  for (let i = 0; i < values.length; i++) {
+    const v = values[i]!
+    let j = i
+    // not `>`: a NaN sinks to the end, as the engine's sort has it
+    while (j > 0 && !(scratch[j - 1]! <= v)) {
+      if (Number.isNaN(v)) break
+      scratch[j] = scratch[j - 1]!
+      j--
+    }
+    scratch[j] = v
+  }
+  return scratch
 }
 
 const meanOf = (values: readonly number[]): number => values.reduce((a, b) => a + b, 0) / values.length

@@ -4,7 +4,7 @@
  * away. Masked greedily, the roughest first, each time against neighbours that are not masked yet.
  */
 import { lineAt } from './axisFlaws.ts'
-import { localNoise, roughness } from './noise.ts'
+import { localNoise, roughness, roughnessAt, usedPlaces } from './noise.ts'
 
 const TIMES_NOISE = 8
 const WINDOW = 30
@@ -27,10 +27,10 @@ export const findSpikes = (
   const sigma = localNoise(x, y, left, floor, WINDOW)
   const shoulder = Math.max(0.15, 0.5 * Math.exp(-4 * Math.LN2 * (stepNm / bandwidthNm) ** 2))
   const reach = Math.max(2, Math.floor(bandwidthNm / (2 * stepNm)) + 1)
+  const r = roughness(x, y, left)
   for (let pass = 0; pass < PASSES; pass++) {
-    const r = roughness(x, y, left)
-    const index = [...left.keys()].filter((i) => left[i] === 1)
-    let found = 0
+    const index = usedPlaces(left)
+    const found: number[] = []
     for (let k = 0; k < index.length; k++) {
       const i = index[k]!
       if (Math.abs(r[i]!) < TIMES_NOISE * sigma[i]!) continue
@@ -39,16 +39,38 @@ export const findSpikes = (
       if (!isNarrow(y, index, k, reach, shoulder, sigma[i]!)) continue
       spike[i] = 1
       left[i] = 0
-      found++
+      found.push(i)
     }
-    if (found === 0) break
+    if (found.length === 0) break
+    lookAgain(x, y, left, found, r)
   }
   return joined(x, y, spike, used, sigma, Math.max(2, Math.round((2 * bandwidthNm) / stepNm)))
 }
 
+/** Roughness anew where neighbours were masked; elsewhere it has not changed. */
+const lookAgain = (
+  x: Float64Array,
+  y: Float64Array,
+  left: Uint8Array,
+  masked: readonly number[],
+  r: Float64Array,
+): void => {
+  const index = usedPlaces(left)
+  if (index.length < 5) {
+    r.fill(Number.NaN)
+    return
+  }
+  let k = 0
+  for (const i of masked) {
+    r[i] = Number.NaN
+    while (k < index.length && index[k]! < i) k++
+    for (let j = Math.max(0, k - 5); j < Math.min(index.length, k + 5); j++) r[index[j]!] = roughnessAt(x, y, index, j)
+  }
+}
+
 const isNarrow = (
   y: Float64Array,
-  index: readonly number[],
+  index: Int32Array,
   k: number,
   reach: number,
   shoulder: number,
