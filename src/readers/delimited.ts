@@ -139,11 +139,16 @@ const dialectsFor = (hints: ReadingHints, declared: string | undefined): readonl
 /** The tables that explain the most lines: a dialect that leaves rows of numbers over is not the file's. */
 const readable = (lines: readonly Line[], dialects: readonly Dialect[]): readonly Table[] => {
   const tables = dialects
+    .filter(({ delimiter }) => occurs(delimiter, lines))
     .map((dialect) => tableUnder(lines, dialect))
     .filter((table) => table !== null && table.columns >= 2) as Table[]
   const most = Math.max(0, ...tables.map((table) => table.rows.length))
   return tables.filter((table) => table.rows.length === most)
 }
+
+/** A delimiter that stands nowhere makes no table of two columns. */
+const occurs = (delimiter: Delimiter, lines: readonly Line[]): boolean =>
+  lines.some(({ text }) => (delimiter === ' ' ? /\S[ \t]+\S/.test(text) : text.includes(delimiter)))
 
 const distinct = (attempts: readonly Extract<Attempt, { kind: 'spectra' }>[]): typeof attempts => {
   const seen = new Map<string, (typeof attempts)[number]>()
