@@ -5,7 +5,7 @@ import { disorder, joinNeighbours, reweigh, type Selection, selectPoints, usedWi
 import { componentAt } from './shapes.ts'
 import { ROUGH, type Solution, solveRecipe } from './solveRecipe.ts'
 import type { BandFit, FitBands, FittedComponent, Recipe } from './types.ts'
-import { type Uncertainty, uncertaintyOf } from './uncertainty.ts'
+import { repeatabilityOf, type Uncertainty, uncertaintyOf } from './uncertainty.ts'
 
 /** A band is there when its height exceeds this many standard uncertainties. */
 const HEIGHT_LIMIT = 4
@@ -42,7 +42,7 @@ export const fitBands: FitBands = (spectrum, recipe, admissible) => {
   const present = recipe.components.map((_, k) => stands(solution, uncertainty, k))
   if (!recipe.components.some(({ kind }, k) => kind === 'band' && present[k]))
     return unfitted(spectrum, 'No band stands above the noise.', count, 'no-band')
-  return fitted(spectrum, recipe, admissible, points, solution, uncertainty, present)
+  return fitted(spectrum, recipe, admissible, points, solution, repeatabilityOf(recipe, solution, points), present)
 }
 
 const stands = ({ at }: Solution, uncertainty: Uncertainty | null, k: number): boolean => {

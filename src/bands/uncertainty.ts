@@ -6,6 +6,8 @@
  * significant, 2/√n), so n/τ is the effective number of points (Priestley, Spectral Analysis and Time Series, 1981, §5.3).
  */
 import { freeParameters } from './levenbergMarquardt.ts'
+import type { Selection } from './points.ts'
+import { type Separated, separable } from './separable.ts'
 import { searchSpace } from './shapes.ts'
 import type { Solution } from './solveRecipe.ts'
 import { cholesky, inverse } from './symmetric.ts'
@@ -41,44 +43,132 @@ export const correlationTime = (residuals: Float64Array): number => {
 
 /** Null where the parameters can't be told apart on these points. */
 export const uncertaintyOf = (recipe: Recipe, solution: Solution): Uncertainty | null => {
+  const { at } = solution
+  const places = placesIn(recipe, solution)
+  const factor = cholesky(gramOf(at, at, places), places.size)
+  const points = at.residuals.length
+  if (!factor || points <= places.size) return null
+  const tau = correlationTime(at.residuals)
+  const scale = (solution.chi2 / (points - places.size)) * tau
+  const covariance = inverse(factor)
+  return uncertaintyFrom(
+    places,
+    covariance.map((value) => value * scale),
+    points / tau,
+  )
+}
+
+/**
+ * How well the fit repeats on the same compound. Where the recipe reaches the noise that is the uncertainty above. Where
+ * it does not, residuals hold structure that comes again with every spectrum and is no scatter: with weights W² in the
+ * fit and variances Σ of the noise alone, cov = N⁻¹ M N⁻¹, M the Gram matrix under the weights W⁴Σ (the sandwich of
+ * Huber, Proc. Fifth Berkeley Symp. 1 (1967) 221). Σ is the noise times what the residuals, freed of all that is slower
+ * than eleven points, have of scale and correlation.
+ */
+export const repeatabilityOf = (recipe: Recipe, solution: Solution, points: Selection): Uncertainty | null => {
+  const asIfScatter = uncertaintyOf(recipe, solution)
+  if (!(recipe.misfit !== undefined && recipe.misfit > 0) || asIfScatter === null) return asIfScatter
   const { at, parameters } = solution
+  const { x, y, weight, noise } = points
+  const ofNoise = separable(recipe, { x, y, weight: weight.map((w, i) => w * w * noise[i]!) })(parameters)
+  const places = placesIn(recipe, solution)
+  const factor = cholesky(gramOf(at, at, places), places.size)
+  // a height that other weights would hold at zero leaves its products unmade
+  const isWhole = places.free.every((i) => ofNoise?.coefficients[i >> 1] !== 0)
+  if (!factor || !ofNoise || !isWhole) return asIfScatter
+  const bread = inverse(factor)
+  const meat = gramOf(ofNoise, at, places)
+  const fast = withoutSlow(at.residuals.map((r, i) => r / (weight[i]! * noise[i]!)))
+  const tau = correlationTime(fast)
+  const scale = Math.max(1, MAD_TO_SIGMA * medianOf(fast.map(Math.abs))) ** 2 * tau
+  const covariance = multiplied(multiplied(bread, meat, places.size), bread, places.size)
+  return uncertaintyFrom(
+    places,
+    covariance.map((value) => value * scale),
+    fast.length / tau,
+  )
+}
+
+/** A normal distribution's median absolute deviation is 0.6745 σ. */
+const MAD_TO_SIGMA = 1.4826
+
+/** Quadratic through 11 points, its value at the middle (Savitzky & Golay, Anal. Chem. 36 (1964) 1627, table I). */
+const SMOOTHING = [-36, 9, 44, 69, 84, 89, 84, 69, 44, 9, -36].map((c) => c / 429)
+/** Part of the variance of white noise that is left when the quadratic is taken away: 1 − the middle coefficient. */
+const LEFT_OVER = Math.sqrt(1 - SMOOTHING[5]!)
+
+/** Residuals less the quadratic through their neighbours, scaled to the variance of white noise; the ends left out. */
+const withoutSlow = (residuals: Float64Array): Float64Array => {
+  const fast = new Float64Array(Math.max(0, residuals.length - 10))
+  for (let i = 0; i < fast.length; i++) {
+    let smooth = 0
+    for (let k = 0; k < 11; k++) smooth += SMOOTHING[k]! * residuals[i + k]!
+    fast[i] = (residuals[i + 5]! - smooth) / LEFT_OVER
+  }
+  return fast
+}
+
+const medianOf = (values: Float64Array): number => values.toSorted()[values.length >> 1] ?? 0
+
+const multiplied = (a: Float64Array, b: Float64Array, size: number): Float64Array => {
+  const product = new Float64Array(size * size)
+  for (let r = 0; r < size; r++)
+    for (let k = 0; k < size; k++)
+      for (let s = 0; s < size; s++) product[r * size + s]! += a[r * size + k]! * b[k * size + s]!
+  return product
+}
+
+/** Which coefficients and parameters of the search are not held, in the order of the matrices. */
+interface Places {
+  readonly active: readonly number[]
+  readonly free: readonly number[]
+  readonly size: number
+}
+
+const placesIn = (recipe: Recipe, { at, parameters }: Solution): Places => {
   const { box } = searchSpace(recipe)
-  const m = at.coefficients.length
-  const n = parameters.length
   const free = freeParameters(parameters, at.gradient, box).filter((i) => at.coefficients[i >> 1]! > 0)
-  const size = at.active.length + free.length
+  return { active: at.active, free, size: at.active.length + free.length }
+}
+
+/** Gram matrix of the Jacobian [Φ, c·D] over what is not held, from the dot products of `of` and the heights of `at`. */
+const gramOf = (of: Separated, { coefficients }: Separated, { active, free, size }: Places): Float64Array => {
+  const m = coefficients.length
+  const n = Math.sqrt(of.dD.length)
   const matrix = new Float64Array(size * size)
-  at.active.forEach((i, r) => {
-    at.active.forEach((j, s) => {
-      matrix[r * size + s] = at.phiPhi[i * m + j]!
+  active.forEach((i, r) => {
+    active.forEach((j, s) => {
+      matrix[r * size + s] = of.phiPhi[i * m + j]!
     })
     free.forEach((a, s) => {
-      const value = at.phiD[i * n + a]! * at.coefficients[a >> 1]!
-      matrix[r * size + at.active.length + s] = value
-      matrix[(at.active.length + s) * size + r] = value
+      const value = of.phiD[i * n + a]! * coefficients[a >> 1]!
+      matrix[r * size + active.length + s] = value
+      matrix[(active.length + s) * size + r] = value
     })
   })
   free.forEach((a, r) => {
     free.forEach((b, s) => {
-      matrix[(at.active.length + r) * size + at.active.length + s] =
-        at.dD[a * n + b]! * at.coefficients[a >> 1]! * at.coefficients[b >> 1]!
+      matrix[(active.length + r) * size + active.length + s] =
+        of.dD[a * n + b]! * coefficients[a >> 1]! * coefficients[b >> 1]!
     })
   })
-  const factor = cholesky(matrix, size)
-  const points = at.residuals.length
-  if (!factor || points <= size) return null
-  const tau = correlationTime(at.residuals)
-  const scale = (solution.chi2 / (points - size)) * tau
-  const covariance = inverse(factor)
+  return matrix
+}
+
+const uncertaintyFrom = (
+  { active, free, size }: Places,
+  covariance: Float64Array,
+  effectivePoints: number,
+): Uncertainty => {
+  const entry = (r: number, s: number) => (r < 0 || s < 0 ? null : covariance[r * size + s]!)
   const place = (i: number) => {
     const k = free.indexOf(i)
-    return k < 0 ? -1 : at.active.length + k
+    return k < 0 ? -1 : active.length + k
   }
-  const entry = (r: number, s: number) => (r < 0 || s < 0 ? null : covariance[r * size + s]! * scale)
   return {
     ofParameter: (i, j) => entry(place(i), place(j)),
-    ofCoefficient: (i) => entry(at.active.indexOf(i), at.active.indexOf(i)),
-    effectivePoints: points / tau,
+    ofCoefficient: (i) => entry(active.indexOf(i), active.indexOf(i)),
+    effectivePoints,
     fitted: size,
   }
 }
