@@ -32,10 +32,10 @@ type Fitted = Extract<BandFit, { kind: 'fitted' }>
 /** The drawing as SVG; the same input gives the same text. A spectrum without a fit is drawn with the reason. */
 export const spectrumPicture = (picture: SpectrumDrawing): string => {
   const { spectrum, fit, title } = picture
-  const { wavenumberPerCm: x, absorbance } = spectrum
+  const { wavenumberPerCm: x } = spectrum
   if (x.length < 2) return drawing(WIDTH, 120, title, 'no data', text(LEFT, 60, 'The spectrum holds no data.'))
   const across = linear(x[0]!, x.at(-1)!, LEFT, RIGHT)
-  const up = linear(...rangeOf(absorbance), BOTTOM, TOP)
+  const up = held(linear(...rangeOf(spectrum), BOTTOM, TOP))
   const fitted = fit.kind === 'fitted' ? fit : null
   const body = [
     text(LEFT, 28, title, { 'font-size': 17 }),
@@ -54,10 +54,17 @@ export const spectrumPicture = (picture: SpectrumDrawing): string => {
 
 const finite = (values: Float64Array): readonly number[] => Array.from(values).filter(Number.isFinite)
 
-const rangeOf = (values: Float64Array): readonly [number, number] => {
-  const known = finite(values)
-  return widened(Math.min(0, ...known), Math.max(0, ...known), 0.06)
+/** The range of what is used: a spike would press the bands flat. Masked points beyond it stand at the edge. */
+const rangeOf = ({ absorbance, used }: Spectrum): readonly [number, number] => {
+  const known = finite(absorbance.filter((_, i) => used[i] === 1))
+  const shown = known.length > 0 ? known : finite(absorbance)
+  return widened(Math.min(0, ...shown), Math.max(0, ...shown), 0.06)
 }
+
+const held = (scale: Scale): Scale => ({
+  ...scale,
+  place: (value) => scale.place(Math.min(Math.max(value, scale.from), scale.to)),
+})
 
 const unitOf = ({ ordinate }: Spectrum): string => (ordinate === 'absorbance' ? 'absorbance' : 'Kubelka–Munk function')
 
