@@ -177,5 +177,5 @@ const movementsOf = (change: ObservedChange, roles: readonly string[]): string =
     const [value, u] = [Math.round(move[0]), Math.max(1, Math.round(move[1]))]
     return `${sayRole(role)} by ${value < 0 ? '−' : '+'}${Math.abs(value)} ± ${u} cm⁻¹`
   })
-  return said.length === 0 ? '' : `Against the reference ${said.join(', ')}.`
+  return said.length === 0 ? '' : `Against the reference the bands moved: ${said.join(', ')}.`
 }

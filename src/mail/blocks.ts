@@ -76,7 +76,7 @@ const htmlOf = (block: Block): string => {
     case 'figures':
       return htmlTable(block.rows)
     case 'command':
-      return `<pre style="margin:.3em 0">${escapeHtml(block.text)}</pre>`
+      return `<pre style="margin:.3em 0;white-space:pre-wrap">${escapeHtml(block.text)}</pre>`
   }
 }
 
