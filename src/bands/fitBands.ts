@@ -4,11 +4,10 @@ import { type CurveMaximum, curveMaximum } from './maxima.ts'
 import { disorder, joinNeighbours, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
 import { componentAt } from './shapes.ts'
 import { ROUGH, type Solution, solveRecipe } from './solveRecipe.ts'
+import { rmsOf, standing } from './standing.ts'
 import type { BandFit, FitBands, FittedComponent, Recipe } from './types.ts'
-import { repeatabilityOf, type Uncertainty, uncertaintyOf } from './uncertainty.ts'
+import { repeatabilityOf, type Uncertainty } from './uncertainty.ts'
 
-/** A band is there when its height exceeds this many standard uncertainties. */
-const HEIGHT_LIMIT = 4
 /** χ²/n over noise and the recipe's misfit from which the recipe is said not to describe the spectrum. */
 const MISFIT_LIMIT = 6
 /** Points to which a spectrum is joined for the fits of other recipes. */
@@ -38,17 +37,11 @@ export const fitBands: FitBands = (spectrum, recipe, admissible) => {
   if (!(points.spread > 0)) return unfitted(spectrum, 'The curve is a flat line.', count, 'no-band')
   const solution = solveRecipe(recipe, points)
   if (!solution) return unfitted(spectrum, 'The recipe can’t be evaluated on this spectrum.', count, 'not-converged')
-  const uncertainty = uncertaintyOf(recipe, solution)
-  const present = recipe.components.map((_, k) => stands(solution, uncertainty, k))
+  const uncertainty = repeatabilityOf(recipe, solution, points)
+  const present = standing(recipe, solution, points, uncertainty)
   if (!recipe.components.some(({ kind }, k) => kind === 'band' && present[k]))
     return unfitted(spectrum, 'No band stands above the noise.', count, 'no-band')
-  return fitted(spectrum, recipe, admissible, points, solution, repeatabilityOf(recipe, solution, points), present)
-}
-
-const stands = ({ at }: Solution, uncertainty: Uncertainty | null, k: number): boolean => {
-  const variance = uncertainty?.ofCoefficient(k) ?? null
-  const height = at.coefficients[k]!
-  return height > 0 && (variance === null || height > HEIGHT_LIMIT * Math.sqrt(variance))
+  return fitted(spectrum, recipe, admissible, points, solution, uncertainty, present)
 }
 
 const fitted = (
@@ -71,13 +64,10 @@ const fitted = (
   }))
   const order = all.map((_, k) => k).sort((a, b) => all[a]!.positionPerCm - all[b]!.positionPerCm)
   const n = points.x.length
-  let square = 0
-  let overNoise = 0
-  solution.at.residuals.forEach((r, i) => {
-    const residual = r / points.weight[i]!
-    square += residual ** 2
-    overNoise += (residual / points.noise[i]!) ** 2
-  })
+  const overNoise = solution.at.residuals.reduce(
+    (sum, r, i) => sum + (r / points.weight[i]! / points.noise[i]!) ** 2,
+    0,
+  )
   const freedom = Math.max(1, n - (uncertainty?.fitted ?? 3 * all.length))
   return {
     kind: 'fitted',
@@ -86,7 +76,7 @@ const fitted = (
     positionCovariance:
       uncertainty && order.map((k) => order.map((l) => positionCovariance(recipe, solution, uncertainty, k, l) ?? 0)),
     background: backgroundOf(recipe, solution),
-    rms: Math.sqrt(square / n),
+    rms: rmsOf(solution, points),
     noise: points.noise.toSorted()[n >> 1]!,
     reducedChi2: overNoise / freedom,
     points: n,

@@ -63,9 +63,15 @@ export const uncertaintyOf = (recipe: Recipe, solution: Solution): Uncertainty |
  * it does not, residuals hold structure that comes again with every spectrum and is no scatter: with weights W² in the
  * fit and variances Σ of the noise alone, cov = N⁻¹ M N⁻¹, M the Gram matrix under the weights W⁴Σ (the sandwich of
  * Huber, Proc. Fifth Berkeley Symp. 1 (1967) 221). Σ is the noise times what the residuals, freed of all that is slower
- * than eleven points, have of scale and correlation.
+ * than eleven points, have of scale and correlation
+ * (`stated`: the noise as it stands, where points were joined and what is left between them is no noise).
  */
-export const repeatabilityOf = (recipe: Recipe, solution: Solution, points: Selection): Uncertainty | null => {
+export const repeatabilityOf = (
+  recipe: Recipe,
+  solution: Solution,
+  points: Selection,
+  scatter: 'measured' | 'stated' = 'measured',
+): Uncertainty | null => {
   const asIfScatter = uncertaintyOf(recipe, solution)
   if (!(recipe.misfit !== undefined && recipe.misfit > 0) || asIfScatter === null) return asIfScatter
   const { at, parameters } = solution
@@ -80,7 +86,7 @@ export const repeatabilityOf = (recipe: Recipe, solution: Solution, points: Sele
   const meat = gramOf(ofNoise, at, places)
   const fast = withoutSlow(at.residuals.map((r, i) => r / (weight[i]! * noise[i]!)))
   const tau = correlationTime(fast)
-  const scale = Math.max(1, MAD_TO_SIGMA * medianOf(fast.map(Math.abs))) ** 2 * tau
+  const scale = scatter === 'stated' ? 1 : Math.max(1, MAD_TO_SIGMA * medianOf(fast.map(Math.abs))) ** 2 * tau
   const covariance = multiplied(multiplied(bread, meat, places.size), bread, places.size)
   return uncertaintyFrom(
     places,

@@ -1,62 +1,61 @@
-/** Measured spectra of the folder TENDQ_REFERENCE_DATA, read with no more than these tests need. */
+/** Measured spectra of the folder TENDQ_REFERENCE_DATA, read and analysed as `fit` does. */
 import { existsSync, readFileSync } from 'node:fs'
 import { join } from 'node:path'
+import { analyse } from '../../src/analysis/index.ts'
+import type { Analysis } from '../../src/analysis/types.ts'
+import type { BandFit, FittedComponent } from '../../src/bands/types.ts'
+import { findIon } from '../../src/chemistry/ions.ts'
+import { readSpectra } from '../../src/readers/index.ts'
+import type { RawSpectrum } from '../../src/readers/types.ts'
 import { prepareSpectrum } from '../../src/spectrum/index.ts'
-import type { Spectrum } from '../../src/spectrum/types.ts'
+import type { PrepareOptions, Spectrum } from '../../src/spectrum/types.ts'
 
 export const referenceFolder = process.env.TENDQ_REFERENCE_DATA
 export const hasReferenceData = referenceFolder !== undefined && existsSync(referenceFolder)
+const PREPARE: PrepareOptions = { medium: 'air', absorbanceLimit: 3, bandwidthNm: 1 }
 
-export const spectrumOf = (rows: readonly (readonly [nm: number, absorbance: number])[]): Spectrum => {
-  const prepared = prepareSpectrum(
+export const CHARGES = ['000', '010', '020', '030', '040', '050', '060', '070', '080', '090', '100'] as const
+
+const read = (...path: readonly string[]): readonly RawSpectrum[] => {
+  const file = join(referenceFolder!, ...path)
+  const reading = readSpectra(readFileSync(file), file, {})
+  if (reading.kind === 'refused') throw new Error(reading.faults[0]?.what ?? 'refused')
+  return reading.spectra
+}
+
+export const readVanadium = (percent: string): RawSpectrum => read('vanadium', `v2v3_${percent}pc.csv`)[0]!
+
+/** Five spectra, ten minutes apart in all. */
+export const readAquation = (): readonly RawSpectrum[] => read('aquation', 'trans_dichlorobis_en_cobalt.jdx')
+
+export const prepared = (raw: RawSpectrum): Spectrum => {
+  const preparation = prepareSpectrum(raw, PREPARE)
+  if (preparation.kind === 'refused') throw new Error(preparation.faults[0].what)
+  return preparation.spectrum
+}
+
+/** On its own, without a locked recipe. */
+export const analysed = (raw: RawSpectrum, symbol: string): Analysis => {
+  const found = findIon(symbol)
+  if (found.kind !== 'found') throw new Error(symbol)
+  const outcome = analyse(
+    raw,
     {
-      index: 0,
-      x: Float64Array.from(rows, (row) => row[0]),
-      y: Float64Array.from(rows, (row) => row[1]),
-      xUnit: 'nm',
-      medium: 'air',
-      yKind: 'absorbance',
-      sample: null,
-      title: null,
-      time: null,
-      pathMm: null,
-      temperatureC: null,
-      concentrationMolPerL: null,
-      header: {},
-      warnings: [],
+      prepare: PREPARE,
+      ion: found.ion,
+      geometry: 'octahedral',
+      spin: null,
+      expected: [],
+      bands: null,
+      repeatabilityNm: null,
     },
-    { medium: 'air', absorbanceLimit: 2, bandwidthNm: 1 },
+    null,
   )
-  if (prepared.kind !== 'prepared') throw new Error('the measured spectrum was refused')
-  return prepared.spectrum
+  if (outcome.kind === 'refused') throw new Error(outcome.faults[0].what)
+  return outcome.analysis
 }
 
-export const readVanadium = (percent: string): Spectrum => {
-  const text = readFileSync(join(referenceFolder!, 'vanadium', `v2v3_${percent}pc.csv`), 'utf8')
-  return spectrumOf(
-    text
-      .split('\n')
-      .filter((line) => /^\d/.test(line))
-      .map((line) => line.split(',').map(Number) as [number, number]),
-  )
-}
-
-/** The five blocks of the aquation file: AFFN with the first x of every line. */
-export const readAquation = (): readonly Spectrum[] => {
-  const text = readFileSync(join(referenceFolder!, 'aquation', 'trans_dichlorobis_en_cobalt.jdx'), 'utf8')
-  return text
-    .split('##XYDATA= (X++(Y..Y))')
-    .slice(1)
-    .map((block) => {
-      const factor = 0.00000011920928955078
-      const rows = block
-        .split('##END')[0]!
-        .trim()
-        .split('\n')
-        .flatMap((line) => {
-          const [x, ...ys] = line.trim().split(/\s+/).map(Number)
-          return ys.map((y, i) => [x! - 2 * i, y * factor] as const)
-        })
-      return spectrumOf(rows)
-    })
+export const bandsOf = (fit: BandFit): readonly FittedComponent[] => {
+  if (fit.kind === 'unfitted') throw new Error(fit.why)
+  return fit.components.filter(({ kind }) => kind === 'band')
 }

@@ -1,0 +1,110 @@
+/** From places where bands may be to solved recipes: starts, what comes out empty left out, the closest of each kind. */
+import { BACKGROUNDS, makeRecipe, OTHER_BACKGROUNDS } from './candidates.ts'
+import type { Selection } from './points.ts'
+import { apart, findSeeds, NARROWEST_PER_CM, type Seed, WIDEST_PER_CM } from './seeds.ts'
+import { componentAt } from './shapes.ts'
+import { ROUGH, type Solution, solveRecipe } from './solveRecipe.ts'
+import type { BackgroundTerm, BandHint, Recipe } from './types.ts'
+
+export interface Found {
+  readonly recipe: Recipe
+  readonly solutions: readonly Solution[]
+  readonly chi2: number
+}
+
+export type Place = Pick<Seed, 'positionPerCm' | 'widthPerCm'>
+
+/** Where a flank starts; null: none. */
+export type Tail = Place | null
+
+export type Attempt = (places: readonly Place[], tail: Tail, background: readonly BackgroundTerm[]) => Found | null
+
+/** Solves recipes on the points. What comes out empty is left out, and the rest starts anew from where it came to rest. */
+export const searching =
+  (points: readonly Selection[], windowPerCm: readonly [number, number]): Attempt =>
+  (places, tail, background) => {
+    const again = searching(points, windowPerCm)
+    const recipe = makeRecipe(places, tail ?? false, background, windowPerCm, 'search')
+    const solutions = points.map((selection) => solveRecipe(recipe, selection, ROUGH))
+    if (!solutions.every((solution) => solution !== null)) return null
+    const trial = { recipe, solutions, chi2: solutions.reduce((sum, solution) => sum + solution.chi2, 0) }
+    const isEmpty = (k: number) => solutions.every(({ at }) => at.coefficients[k] === 0)
+    if (tail && isEmpty(places.length)) return again(bandPlaces(trial), null, background)
+    const used = background.filter((_, k) => !isEmpty(recipe.components.length + k))
+    return used.length === background.length || used.length === 0 ? trial : again(bandPlaces(trial), tail, used)
+  }
+
+export const closer = (best: Found, other: Found): Found => (other.chi2 < best.chi2 ? other : best)
+
+/** The closest of each number of bands. */
+export const leaders = (found: readonly Found[]): readonly Found[] => {
+  const best = new Map<number, Found>()
+  for (const trial of found) {
+    const count = bandCount(trial.recipe)
+    const other = best.get(count)
+    best.set(count, other ? closer(other, trial) : trial)
+  }
+  return [...best.values()]
+}
+
+export const isLeading = (places: readonly Seed[], seeds: readonly Seed[]): boolean =>
+  places.every((place) => seeds.indexOf(place) < places.length)
+
+/** All but the strongest twice as wide: where bands overlap, the inflections of the weaker lie too close together. */
+export const broadened = (places: readonly Seed[]): readonly Place[] =>
+  places.map((place, k) => (k === 0 ? place : { ...place, widthPerCm: Math.min(WIDEST_PER_CM, 2 * place.widthPerCm) }))
+
+export const everyBackground = (
+  places: readonly Place[],
+  attempt: Attempt,
+  tails: readonly Tail[],
+): readonly (Found | null)[] =>
+  [...BACKGROUNDS, ...OTHER_BACKGROUNDS].flatMap((background) => tails.map((tail) => attempt(places, tail, background)))
+
+export const bandCount = ({ components }: Recipe): number => components.filter(({ kind }) => kind === 'band').length
+
+const mean = (values: readonly number[]): number => values.reduce((sum, v) => sum + v, 0) / values.length
+
+const placeOf = ({ recipe, solutions }: Pick<Found, 'recipe' | 'solutions'>, k: number): Place => {
+  const shapes = solutions.map(({ parameters }) =>
+    componentAt(recipe.components[k]!.kind, parameters[2 * k]!, parameters[2 * k + 1]!, recipe.windowPerCm[1]),
+  )
+  return {
+    positionPerCm: mean(shapes.map((shape) => shape.positionPerCm)),
+    widthPerCm: mean(shapes.map((shape) => shape.widthPerCm)),
+  }
+}
+
+export const bandPlaces = (trial: Pick<Found, 'recipe' | 'solutions'>): readonly Place[] =>
+  trial.recipe.components.flatMap(({ kind }, k) => (kind === 'band' ? [placeOf(trial, k)] : []))
+
+/** Hinted places first, then what the curves show, strongest first. */
+export const placesOf = (points: readonly Selection[], hints: readonly BandHint[]): readonly Seed[] => {
+  const seen = apart(points.flatMap((selection) => findSeeds(selection)).sort((a, b) => b.height - a.height))
+  const hinted = hints.map(({ positionPerCm, withinPerCm }) => {
+    const near = seen.filter(
+      (seed) => Math.abs(seed.positionPerCm - positionPerCm) <= Math.max(withinPerCm, NARROWEST_PER_CM),
+    )
+    return near[0] ?? { positionPerCm, widthPerCm: 3500, height: 0 }
+  })
+  return apart([...hinted, ...seen])
+}
+
+/** Where the residuals, smoothed over less than a band, rise above the curve; highest first. */
+export const missingBands = (trial: Found, points: readonly Selection[]): readonly Place[] => {
+  const residual = points.map((selection, s) => ({
+    ...selection,
+    y: trial.solutions[s]!.at.residuals.map((r, i) => r / selection.weight[i]!),
+  }))
+  const places = bandPlaces(trial)
+  const isFree = (seed: Seed) =>
+    places.every(({ positionPerCm }) => Math.abs(positionPerCm - seed.positionPerCm) > NARROWEST_PER_CM / 2)
+  return apart(residual.flatMap((selection) => findSeeds(selection)).sort((a, b) => b.height - a.height)).filter(isFree)
+}
+
+/** The recipe with its places as found. */
+export const started = (trial: Found, bounds: 'search' | 'locked' = 'search'): Recipe => {
+  const flank = trial.recipe.components.findIndex(({ kind }) => kind === 'flank')
+  const tail = flank < 0 ? false : placeOf(trial, flank)
+  return makeRecipe(bandPlaces(trial), tail, trial.recipe.background, trial.recipe.windowPerCm, bounds)
+}
