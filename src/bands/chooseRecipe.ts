@@ -11,9 +11,11 @@
  */
 import type { Spectrum } from '../spectrum/types.ts'
 import { BACKGROUNDS, flankAtEdge, flankStart, RICH_BACKGROUND } from './candidates.ts'
+import { fitBands } from './fitBands.ts'
 import { bestOf, isSeen, judged, type Scored, score } from './judge.ts'
 import { findMisfit } from './misfit.ts'
 import { disorder, joinNeighbours, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
+import { rivalsOf } from './rivals.ts'
 import {
   bandCount,
   bandPlaces,
@@ -43,6 +45,7 @@ const ADMISSIBLE = 10
 const ADMISSIBLE_WITH_MISFIT = 20
 const MOST_ADMISSIBLE = 6
 const FEWEST_RIVALS = 2
+const MOST_RIVALS = 8
 /** Share of the spread that the first look takes recipes to be off: solutions are found more surely than among weights of noise alone. */
 const FIRST_MISFIT = 0.01
 const NARROWEST_WINDOW_PER_CM = 3000
@@ -107,19 +110,32 @@ const choose = (
     [...seen, ...suggested].flatMap((trial) => judged(trial, points, misfit) ?? []),
     points,
   )
+  const settled = new Map<Scored, Recipe>()
+  const recipeOf = (trial: Scored): Recipe => {
+    const recipe = settled.get(trial) ?? settle(trial, full)
+    settled.set(trial, recipe)
+    return recipe
+  }
+  // two bands in place of one may each be undetermined on all the points
+  const isFitted = (trial: Scored) =>
+    bandCount(trial.recipe) === 0 ||
+    spectra.some((spectrum) => fitBands(spectrum, recipeOf(trial), []).kind === 'fitted')
   const mayBeChosen = (trial: Scored) =>
     bands === undefined
-      ? trial.stands && (isSeen(trial, seeds) || (trial.firm && findMisfit(trial.recipe, joined) === 0))
+      ? trial.stands &&
+        (isSeen(trial, seeds) || (trial.firm && findMisfit(trial.recipe, joined) === 0)) &&
+        isFitted(trial)
       : bandCount(trial.recipe) === bands
   const ranked = scored.toSorted((a, b) => a.score - b.score)
   const favoured = ranked.find(mayBeChosen)
-  // bands that none of the second derivatives shows, but that the curve can't do without
-  const indispensable = ranked.find((trial) => bandCount(trial.recipe) > 0 && trial.stands)
-  const isEmpty = favoured && bandCount(favoured.recipe) === 0
-  const best =
-    isEmpty && bands === undefined && indispensable && indispensable.score < favoured.score - ADMISSIBLE
-      ? indispensable
-      : favoured
+  const isEmpty = favoured !== undefined && bandCount(favoured.recipe) === 0 && bands === undefined
+  // bands that no second derivative shows, but that the curve can't do without
+  const indispensable = isEmpty
+    ? ranked
+        .filter(({ recipe, stands, score }) => bandCount(recipe) > 0 && stands && score < favoured.score - ADMISSIBLE)
+        .find(isFitted)
+    : undefined
+  const best = indispensable ?? favoured
   if (!best)
     return none(
       spectra,
@@ -136,8 +152,15 @@ const choose = (
   const near = others.filter((other) => other.score < best.score + (misfit > 0 ? ADMISSIBLE_WITH_MISFIT : ADMISSIBLE))
   // Where the recipe misses the noise, its positions depend on it, however far behind the next one is.
   const close = near.length === 0 && misfit > 0 ? others.slice(0, FEWEST_RIVALS) : near.slice(0, MOST_ADMISSIBLE)
-  const recipe = settle(best, full)
-  return { kind: 'chosen', recipe, admissible: [recipe, ...close.map((other) => settle(other, joined))] }
+  const recipe = recipeOf(best)
+  const richer = others.find((other) => bandCount(other.recipe) > bandCount(best.recipe))
+  const isMissed = recipe.misfit !== undefined
+  const shaped = rivalsOf(best, points, isMissed)
+  const rivals = [...new Set<Found>([...(isMissed && richer ? [richer] : []), ...shaped, ...close])].slice(
+    0,
+    MOST_RIVALS,
+  )
+  return { kind: 'chosen', recipe, admissible: [recipe, ...rivals.map((other) => settle(other, joined))] }
 }
 
 /** Other starts that came to the same end. */

@@ -1,4 +1,4 @@
-import { backgroundAt, FOUR_LN2, scatterOrigin } from './shapes.ts'
+import { backgroundAt, bandAt, scatterOrigin, widthRatio } from './shapes.ts'
 import type { BandFit } from './types.ts'
 
 export interface CurveParts {
@@ -13,9 +13,12 @@ export const evaluateFit = (fit: Extract<BandFit, { kind: 'fitted' }>, wavenumbe
   const { constant, scatter, scatterExponent } = fit.background
   const origin = scatterOrigin(fit.recipe)
   const background = wavenumberPerCm.map((x) => constant + scatter * backgroundAt(scatterExponent ?? 0, origin, x))
-  const components = fit.components.map(({ positionPerCm, widthPerCm, height }) =>
-    wavenumberPerCm.map((x) => height * Math.exp(-FOUR_LN2 * ((x - positionPerCm) / widthPerCm) ** 2)),
-  )
+  // both ascend in position, and bands never swap places
+  const skews = fit.recipe.components.map(({ skew }) => skew ?? 0)
+  const components = fit.components.map(({ positionPerCm, widthPerCm, height }, k) => {
+    const ratio = widthRatio(fit.recipe.components[k]!)
+    return wavenumberPerCm.map((x) => height * bandAt(skews[k]!, ((x - positionPerCm) / widthPerCm) * ratio))
+  })
   const total = background.map((b, i) => components.reduce((sum, part) => sum + part[i]!, b))
   return { total, components, background }
 }

@@ -2,11 +2,11 @@
 import type { Flag, Spectrum } from '../spectrum/types.ts'
 import { type CurveMaximum, curveMaximum } from './maxima.ts'
 import { disorder, joinNeighbours, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
-import { componentAt } from './shapes.ts'
+import { componentAt, widthRatio } from './shapes.ts'
 import { ROUGH, type Solution, solveRecipe } from './solveRecipe.ts'
 import { rmsOf, standing } from './standing.ts'
 import type { BandFit, FitBands, FittedComponent, Recipe } from './types.ts'
-import { repeatabilityOf, type Uncertainty } from './uncertainty.ts'
+import { repeatabilityOf, type Uncertainty, uncertaintyOf } from './uncertainty.ts'
 
 /** χ²/n over noise and the recipe's misfit from which the recipe is said not to describe the spectrum. */
 const MISFIT_LIMIT = 6
@@ -56,9 +56,11 @@ const fitted = (
   const spreads = modelSpreads(recipe, admissible, points)
   const bare = recipe.components.map((_, k) => componentOf(recipe, solution, uncertainty, k))
   const maxima = curveMaxima(points, bare)
+  const structure = structureOf(recipe, solution, uncertainty)
+  const missed = (k: number): number => maximumMissed(points, solution, bare[k]!, maxima[k] ?? null)
   const all = bare.map((component, k) => ({
     ...component,
-    uModelPerCm: spreads[k]!,
+    uModelPerCm: spreads[k] === null ? null : Math.hypot(Math.max(spreads[k]!, missed(k)), structure[k]!),
     maximumPerCm: maxima[k]?.positionPerCm ?? null,
     uMaximumPerCm: maxima[k]?.uPositionPerCm ?? null,
   }))
@@ -125,6 +127,8 @@ const componentOf = (
   const edge = recipe.windowPerCm[1]
   const shape = componentAt(kind, solution.parameters[2 * k]!, solution.parameters[2 * k + 1]!, edge)
   const isBand = kind === 'band'
+  const ratio = widthRatio(recipe.components[k]!)
+  const uWidth = isBand && uncertainty ? root(uncertainty.ofParameter(2 * k + 1, 2 * k + 1)) : null
   return {
     kind,
     positionPerCm: shape.positionPerCm,
@@ -132,8 +136,8 @@ const componentOf = (
     uModelPerCm: null,
     maximumPerCm: null,
     uMaximumPerCm: null,
-    widthPerCm: shape.widthPerCm,
-    uWidthPerCm: isBand && uncertainty ? root(uncertainty.ofParameter(2 * k + 1, 2 * k + 1)) : null,
+    widthPerCm: shape.widthPerCm * ratio,
+    uWidthPerCm: uWidth === null ? null : uWidth * ratio,
     height: solution.at.coefficients[k]! * shape.heightRatio,
     uHeight: isBand && uncertainty ? root(uncertainty.ofCoefficient(k)) : null,
   }
@@ -157,6 +161,38 @@ const curveMaxima = (points: Selection, components: readonly FittedComponent[]):
     )
     return rival ? null : own
   })
+}
+
+/**
+ * What structure in the residuals may have moved each centre by: the uncertainty were it scatter that is correlated along the
+ * axis as it is, less the repeatability,
+ * half a width at most. 0 where the recipe reaches the noise.
+ */
+const structureOf = (recipe: Recipe, solution: Solution, repeatability: Uncertainty | null): readonly number[] => {
+  const asIfScatter = (recipe.misfit ?? 0) > 0 ? uncertaintyOf(recipe, solution) : null
+  return recipe.components.map(({ kind }, k) => {
+    if (kind === 'flank' || !asIfScatter || !repeatability) return 0
+    const variance = (of: Uncertainty) => positionCovariance(recipe, solution, of, k, k) ?? 0
+    const moved = Math.sqrt(Math.max(0, variance(asIfScatter) - variance(repeatability)))
+    return Math.min(moved, solution.parameters[2 * k + 1]! / 2)
+  })
+}
+
+/**
+ * How far the fitted curve's maximum is from the measured one beyond what noise explains: what a shape that the recipe does not have does to the very place that is read off by eye.
+ */
+const maximumMissed = (
+  points: Selection,
+  { at }: Solution,
+  { positionPerCm, widthPerCm }: FittedComponent,
+  measured: CurveMaximum | null,
+): number => {
+  if (!measured) return 0
+  const y = points.y.map((v, i) => v - at.residuals[i]! / points.weight[i]!)
+  const modelled = curveMaximum({ ...reweigh(points, 0), y }, positionPerCm, widthPerCm)
+  if (!modelled) return 0
+  const distance = Math.abs(modelled.positionPerCm - measured.positionPerCm)
+  return distance > 3 * (measured.uPositionPerCm ?? Infinity) ? distance : 0
 }
 
 const backgroundOf = (recipe: Recipe, { at }: Solution) => {
@@ -192,9 +228,9 @@ const flagsOf = (
 }
 
 /**
- * Per component, how far its centre goes under the other admissible recipes: greatest distance / √3, the standard
- * uncertainty of a rectangular distribution (GUM 4.3.7). 0 where the recipe
- * reaches the noise and no other is admissible; null where there is no other though it does not, and for a flank.
+ * Per component, how far its centre goes under the other admissible recipes. Where the recipe reaches the noise the truth is
+ * taken to lie among them: greatest distance / √3, the standard uncertainty of a rectangular distribution (GUM 4.3.7), 0 without a rival.
+ * Where it does not, none of them is true, nothing bounds it, and the greatest distance itself is taken; null without a rival, and for a flank.
  */
 const modelSpreads = (recipe: Recipe, admissible: readonly Recipe[], points: Selection): readonly (number | null)[] => {
   const others = admissible.filter((other) => JSON.stringify(other) !== JSON.stringify(recipe))
@@ -222,6 +258,6 @@ const modelSpreads = (recipe: Recipe, admissible: readonly Recipe[], points: Sel
       const nearest = Math.min(...positions.map((p) => Math.abs(p - centre)))
       return nearest < width / 2 ? [nearest] : []
     })
-    return Math.max(0, ...distances) / Math.sqrt(3)
+    return Math.max(0, ...distances) / ((recipe.misfit ?? 0) > 0 ? 1 : Math.sqrt(3))
   })
 }

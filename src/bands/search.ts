@@ -106,5 +106,10 @@ export const missingBands = (trial: Found, points: readonly Selection[]): readon
 export const started = (trial: Found, bounds: 'search' | 'locked' = 'search'): Recipe => {
   const flank = trial.recipe.components.findIndex(({ kind }) => kind === 'flank')
   const tail = flank < 0 ? false : placeOf(trial, flank)
-  return makeRecipe(bandPlaces(trial), tail, trial.recipe.background, trial.recipe.windowPerCm, bounds)
+  const recipe = makeRecipe(bandPlaces(trial), tail, trial.recipe.background, trial.recipe.windowPerCm, bounds)
+  const components = recipe.components.map((component, k) => {
+    const { shape, skew } = trial.recipe.components[k]!
+    return skew === undefined ? component : { ...component, shape, skew }
+  })
+  return { ...recipe, name: trial.recipe.name, components }
 }

@@ -9,7 +9,7 @@
  * H⁻¹ is at the same time the marginal covariance of α in the full problem.
  */
 import type { Quadratic } from './levenbergMarquardt.ts'
-import { backgroundAt, backgroundExponents, fillColumns, scatterOrigin } from './shapes.ts'
+import { backgroundAt, backgroundExponents, fillColumns, fillSkewed, scatterOrigin } from './shapes.ts'
 import { cholesky, forward, solve, submatrix } from './symmetric.ts'
 import type { Recipe } from './types.ts'
 
@@ -131,7 +131,11 @@ export const separable = (recipe: Recipe, { x, y, weight }: Points): ((alpha: Fl
   const signed = Array.from({ length: m }, (_, i) => i >= nBands && exponents[i - nBands] === 0)
 
   return (alpha) => {
-    components.forEach(({ kind }, k) => {
+    components.forEach(({ kind, skew }, k) => {
+      if (skew) {
+        fillSkewed(skew, alpha[2 * k]!, alpha[2 * k + 1]!, x, weight, phi[k]!, slopes[2 * k]!, slopes[2 * k + 1]!)
+        return
+      }
       fillColumns(kind, alpha[2 * k]!, alpha[2 * k + 1]!, edge, x, weight, phi[k]!, slopes[2 * k]!, slopes[2 * k + 1]!)
     })
     const phiPhi = new Float64Array(m * m)

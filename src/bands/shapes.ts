@@ -2,6 +2,8 @@
  * The functions of a recipe and the nonlinear parameters the search runs over, two a component.
  *
  * band  φ(x) = exp(−4 ln2 u²), u = (x − p)/w; parameters p (centre) and w (full width at half maximum), cm⁻¹
+ *       skewed: φ(x) = exp(−ln2 (ln(1 + 2 b u)/b)²), 0 where 1 + 2 b u ≤ 0, with the asymmetry b held (Fraser & Suzuki, Anal. Chem. 41
+ *       (1969) 37, from memory); maximum at p, full width at half maximum w sinh(b)/b; b → 0 is the Gaussian
  * flank φ(x) = exp(b (t − e t²/2)), t = x − xₑ with xₑ the upper end of the window: a Gaussian about p = xₑ + 1/e of
  *       width w = √(8 ln2 / (b e)), normalised at xₑ; b is the logarithmic slope there. Of a tail the data tell value and
  *       slope at xₑ well, the centre hardly at all: in (b, e) the ridge is straight, in (p, w) a search crawls along a parabola.
@@ -81,6 +83,41 @@ export const fillColumns = (
       bySecond[i] = d * u
     }
   }
+}
+
+/** The same for a band of asymmetry `skew`, not 0. */
+export const fillSkewed = (
+  skew: number,
+  position: number,
+  width: number,
+  x: Float64Array,
+  weight: Float64Array,
+  value: Float64Array,
+  byPosition: Float64Array,
+  byWidth: Float64Array,
+): void => {
+  for (let i = 0; i < x.length; i++) {
+    const u = (x[i]! - position) / width
+    const argument = 1 + 2 * skew * u
+    value[i] = byPosition[i] = byWidth[i] = 0
+    if (argument <= 0) continue
+    const log = Math.log(argument) / skew
+    const f = Math.exp(-Math.LN2 * log * log) * weight[i]!
+    const d = (FOUR_LN2 * log * f) / (argument * width)
+    value[i] = f
+    byPosition[i] = d
+    byWidth[i] = d * u
+  }
+}
+
+/** Full width at half maximum of a component over its parameter w. */
+export const widthRatio = ({ skew }: RecipeComponent): number => (skew ? Math.sinh(skew) / skew : 1)
+
+/** Height of a band of asymmetry `skew` at u = (x − p)/w, 1 at its centre. */
+export const bandAt = (skew: number, u: number): number => {
+  if (skew === 0) return Math.exp(-FOUR_LN2 * u * u)
+  const argument = 1 + 2 * skew * u
+  return argument > 0 ? Math.exp(-Math.LN2 * (Math.log(argument) / skew) ** 2) : 0
 }
 
 /** The middle of the window, at which scatter is given. */

@@ -20,7 +20,10 @@ export interface Recipe {
 }
 
 export interface RecipeComponent {
-  readonly shape: 'gaussian'
+  /** `skewed`: log-normal, see shapes.ts. */
+  readonly shape: 'gaussian' | 'skewed'
+  /** Asymmetry b of a skewed band, held; positive: the blue wing is the longer. */
+  readonly skew?: number
   /** `band`: a d–d band; `flank`: a charge-transfer band whose centre may lie beyond the window. */
   readonly kind: 'band' | 'flank'
   /** Where the search starts and how far it may go. cm⁻¹ */
