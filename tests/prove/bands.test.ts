@@ -1,6 +1,8 @@
 /** Coverage of the intervals over 2,000 simulated spectra of many kinds (noise, window, step, background, flank); the truth is known. */
 import { expect, it } from 'vitest'
 import { chooseRecipe, fitBands } from '../../src/bands/index.ts'
+import { efficiencyOver } from '../bands/efficiency.ts'
+import { growthOver } from '../bands/memory.ts'
 import { gaussianNoise, generator, simulate, type Truth } from '../bands/simulated.ts'
 
 const COUNT = 2000
@@ -46,4 +48,19 @@ it('over 2,000 spectra the 95 % intervals of the positions cover the truth 93 to
   expect(far).toEqual([])
   expect(covered / count).toBeGreaterThan(0.93)
   expect(covered / count).toBeLessThan(0.97)
+})
+
+it('over 2,000 spectra of two bands Δo and B are covered 93 to 97 % of the time, at the Cramér–Rao bound', () => {
+  const found = efficiencyOver(2000, 405)
+  console.log(found)
+  expect(found.unlike).toBeLessThan(20)
+  expect(Math.abs(found.efficiency - 1)).toBeLessThan(0.15)
+  for (const share of [found.deltaCovered, found.bCovered]) {
+    expect(share).toBeGreaterThan(0.93)
+    expect(share).toBeLessThan(0.97)
+  }
+})
+
+it('memory stays flat over 100,000 fits', () => {
+  expect(growthOver(100_000)).toBeLessThan(8e6)
 })
