@@ -1,9 +1,11 @@
 /**
  * The recipe of a sample, from its reference spectra together.
  *
- * Candidates: choices of the places where bands may be, the strongest always among them, each with the backgrounds and with or without a
- * charge-transfer flank. A band that only the residuals ask for may enter where the recipe then reaches the noise; else it is
- * one more admissible way to describe the spectra, and tells how far the positions depend on it. Score, summed over the spectra (Schwarz 1978):
+ * A first look takes choices of the places where bands may be, the strongest always among them, some with wider starts, with and without a
+ * charge-transfer flank. The closest of each number of bands starts anew from where it came to rest, under every background and
+ * flank, since one start alone often rests in a false minimum. A band that only the residuals ask for may enter where the recipe then
+ * reaches the noise; else it is one more way to describe the spectra, and tells how far the positions depend on it, as
+ * the rivals of rivals.ts do. Score, summed over the spectra (Schwarz 1978):
  *   BIC = n′ ln(χ²/n) + p ln n′,  n′ = n/τ
  * with τ the correlation time of the residuals of the best candidate. Real bands are no Gaussians: against raw noise one
  * more band always pays, because residuals of structure look like n independent witnesses. They are not, n′ counts them.
@@ -112,7 +114,7 @@ const choose = (
   )
   const settled = new Map<Scored, Recipe>()
   const recipeOf = (trial: Scored): Recipe => {
-    const recipe = settled.get(trial) ?? settle(trial, full)
+    const recipe = settled.get(trial) ?? settle(trial, joined)
     settled.set(trial, recipe)
     return recipe
   }

@@ -192,7 +192,9 @@ const maximumMissed = (
   const modelled = curveMaximum({ ...reweigh(points, 0), y }, positionPerCm, widthPerCm)
   if (!modelled) return 0
   const distance = Math.abs(modelled.positionPerCm - measured.positionPerCm)
-  return distance > 3 * (measured.uPositionPerCm ?? Infinity) ? distance : 0
+  // farther away it is another maximum
+  const isSame = distance < widthPerCm / 4
+  return isSame && distance > 3 * (measured.uPositionPerCm ?? Infinity) ? distance : 0
 }
 
 const backgroundOf = (recipe: Recipe, { at }: Solution) => {
