@@ -2,7 +2,8 @@ import { defineConfig } from 'vitest/config'
 
 export default defineConfig({
   test: {
-    pool: 'forks', // native addons do not bear worker threads
+    pool: 'forks',
+    setupFiles: ['tests/setup.ts'], // native addons do not bear worker threads
     include: ['tests/**/*.test.ts'],
     exclude: ['tests/prove/**'],
     testTimeout: 30_000,

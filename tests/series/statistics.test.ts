@@ -100,7 +100,7 @@ describe('mean, median, standard deviation', () => {
       fc.property(list, (values) => {
         const turned = values.toReversed()
         expect(mean(turned)).toBeCloseTo(mean(values), 6)
-        expect(median(turned)).toBe(median(values))
+        expect(median(turned) === median(values)).toBe(true) // 0 and −0 are one number
         expect(sd(turned)).toBeCloseTo(sd(values)!, 6)
       }),
     )
