@@ -1,3 +1,4 @@
+import { animl } from './animl.ts'
 import { delimitedText } from './delimited.ts'
 import { jcampDx } from './jcamp.ts'
 import type { Reader, Reading, ReadingHints } from './types.ts'
@@ -6,7 +7,7 @@ export { settleYaml } from './settle.ts'
 export { type Decoded, decodeText } from './text.ts'
 
 /** Every format that is read. A new one is a file of its own and one entry here. */
-export const READERS: readonly Reader[] = [jcampDx, delimitedText]
+export const READERS: readonly Reader[] = [jcampDx, animl, delimitedText]
 
 /** Less than this is no claim. */
 const CLAIM = 0.3
