@@ -36,7 +36,7 @@ export type ParsedXml =
 const LARGEST_TEXT = 32 * 1024 * 1024
 const LONGEST_ATTRIBUTE = 65_536
 const MOST_ATTRIBUTES = 1000
-const MOST_ELEMENTS = 1_000_000
+const MOST_ELEMENTS = 250_000
 const DEEPEST = 100
 
 /** Parts that hold no measured values; signatures and embedded documents may be large. */
