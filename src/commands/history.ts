@@ -70,7 +70,7 @@ const timeOf = (option: string, text: string | undefined, zone: string): string 
 const unknownSample = (sample: string, db: ReturnType<typeof openStoreReadOnly>): FaultError => {
   const names = db
     .prepare<[], { sample: string }>(
-      `SELECT DISTINCT sample FROM spectrum WHERE sample IS NOT NULL ORDER BY sample LIMIT 20`,
+      `SELECT DISTINCT sample FROM spectrum_now WHERE sample IS NOT NULL ORDER BY sample LIMIT 20`,
     )
     .all()
     .map((row) => printable(row.sample))

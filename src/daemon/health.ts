@@ -135,8 +135,8 @@ const gathering = (db: Db): readonly string[] =>
   db
     .prepare<[number], { line: string }>(
       `SELECT s.sample || ' on ' || s.instrument || ': ' || min(j.what) AS line
-         FROM spectrum s JOIN judgement j ON j.spectrum = s.id AND j.outcome = 'gathering'
-        WHERE s.id IN (SELECT max(id) FROM spectrum WHERE sample IS NOT NULL GROUP BY sample, instrument)
+         FROM spectrum_now s JOIN judgement j ON j.spectrum = s.id AND j.outcome = 'gathering'
+        WHERE s.id IN (SELECT max(id) FROM spectrum_now WHERE sample IS NOT NULL GROUP BY sample, instrument)
         GROUP BY s.id ORDER BY s.sample LIMIT ?`,
     )
     .all(LISTED)
@@ -155,8 +155,8 @@ const shelved = (db: Db): readonly string[] =>
 const unknownSamples = (db: Db): readonly string[] =>
   db
     .prepare<[number], { sample: string }>(
-      `SELECT coalesce(sample, '(no name)') AS sample FROM spectrum
-        WHERE NOT EXISTS (SELECT 1 FROM analysis WHERE analysis.spectrum = spectrum.id) GROUP BY 1 ORDER BY 1 LIMIT ?`,
+      `SELECT coalesce(sample, '(no name)') AS sample FROM spectrum_now s
+        WHERE NOT EXISTS (SELECT 1 FROM analysis a WHERE a.spectrum = s.id AND a.id > s.analysed_before) GROUP BY 1 ORDER BY 1 LIMIT ?`,
     )
     .all(LISTED)
     .map(({ sample }) => sample)

@@ -26,7 +26,7 @@ const ofSample = (subject: Subject, stations: Stations): ReferenceState => {
   const { store, now } = stations
   const { sample, instrument } = subject
   const frozen = store.recipes.frozenReference(sample, instrument.name)
-  if (frozen !== null) return stateOf(occasionsOfRows(store.analyses.some(frozen), subject, store))
+  if (frozen !== null) return stateOf(occasionsOfRows(store.analyses.some(frozen, sample), subject, store))
   const recipe = store.recipes.of(sample, instrument.name)
   const need = occasionsNeeded(subject)
   if (recipe === null) return { kind: 'gathering', have: 0, need }
