@@ -2,8 +2,8 @@ import { defineConfig } from 'vitest/config'
 
 export default defineConfig({
   test: {
-    pool: 'forks',
-    setupFiles: ['tests/setup.ts'], // native addons do not bear worker threads
+    pool: 'forks', // native addons do not bear worker threads
+    setupFiles: ['tests/setup.ts'],
     include: ['tests/**/*.test.ts'],
     exclude: ['tests/prove/**'],
     testTimeout: 30_000,
