@@ -12,7 +12,7 @@ import { processPending, type Stations } from './pipeline.ts'
 import { startPool } from './pool.ts'
 import { sendDue } from './post.ts'
 import { loadRoom, type RoomInForce } from './room.ts'
-import { unshelveWhatIsDue } from './shelf.ts'
+import { followClock } from './service.ts'
 
 export type Stop = () => void | Promise<void>
 
@@ -76,7 +76,7 @@ export const openHouse = (configFolder: string, log: Logger) => {
   const judgeTimes = (): Promise<boolean> =>
     minding('overdue', 'what the clock decides could not be judged', () => {
       judgeOverdueSamples(stations)
-      unshelveWhatIsDue(stations)
+      followClock(stations)
       escalate(stations)
     })
 
