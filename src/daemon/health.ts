@@ -1,3 +1,4 @@
+import { decisions } from '../store/decisions.ts'
 import { type Db, whoHolds } from '../store/index.ts'
 
 /** What the daemon notes of itself, for `status` and the health page to read from another process. */
@@ -39,6 +40,8 @@ export interface Health extends DaemonNote {
   }[]
   /** Alarms that a person has silenced for a time. */
   readonly shelved: readonly string[]
+  /** Instruments, samples and studies whose alarms are silent now, or will be, with the end, who and why. */
+  readonly out_of_service: readonly string[]
   readonly gathering: readonly string[]
   readonly unknown_samples: readonly string[]
 }
@@ -107,6 +110,7 @@ export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
     alarms: counts.alarms,
     set_aside: setAside,
     shelved: shelved(db),
+    out_of_service: outOfService(db, now),
     gathering: gathering(db),
     unknown_samples: unknownSamples(db),
   }
@@ -151,6 +155,17 @@ const shelved = (db: Db): readonly string[] =>
     )
     .all(LISTED)
     .map(({ line }) => line)
+
+const outOfService = (db: Db, now: number): readonly string[] => {
+  const iso = (ms: number): string => `${new Date(ms).toISOString().slice(0, 19)}Z`
+  return decisions(db)
+    .periodsNotOver(now)
+    .slice(0, LISTED)
+    .map(
+      ({ of, subject, since, until, by, why }) =>
+        `${of} ${subject} ${since > now ? `from ${iso(since)} ` : ''}until ${iso(until)}, by ${by}: ${why}`,
+    )
+}
 
 const unknownSamples = (db: Db): readonly string[] =>
   db

@@ -6,6 +6,7 @@ import type { DropFolder, Intake, IntakeEvent, IntakeOptions, IntakePorts } from
 import { holdDataFolder, openStore, storeOn } from '../store/index.ts'
 import { escalate } from './escalate.ts'
 import { singleFlight } from './flight.ts'
+import { followDecisions } from './follow.ts'
 import type { DaemonNote } from './health.ts'
 import { judgeOverdueSamples } from './overdue.ts'
 import { processPending, type Stations } from './pipeline.ts'
@@ -64,6 +65,7 @@ export const openHouse = (configFolder: string, log: Logger) => {
   const working = singleFlight(async () => {
     const kept = await minding('storage', 'outcomes could not be kept, they will be tried again', async () => {
       await processPending(stations)
+      if ((await followDecisions(stations)) > 0) sending.kick()
     })
     if (!kept) setTimeout(() => working.kick(), RETRY_MS).unref()
   })

@@ -85,9 +85,10 @@ const whatIsSo = (alarm: StoredAlarm, { store }: Stations, factsNow: (() => Unto
     const facts = factsNow?.() ?? last?.facts ?? null
     return facts === null ? null : { ...facts, alarm: alarm.id, event: last?.told === true ? 're-alarmed' : 'raised' }
   }
-  if (last === null || !last.told || last.facts.event === 'returned') return null
+  const heard = store.letters.lastTold(alarm.id)
+  if (heard === null || heard.event === 'returned') return null
   // figures of the time when it rang would be read as those of now
-  const facts = factsNow?.() ?? { ...last.facts, evidence: [], parameters: [], also: [] }
+  const facts = factsNow?.() ?? { ...heard, evidence: [], parameters: [], also: [] }
   return { ...facts, alarm: alarm.id, event: 'returned' }
 }
 

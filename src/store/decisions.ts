@@ -55,6 +55,9 @@ export const decisions = (db: Db) => {
   const reassigned = db.prepare<[number], Reassignment>(
     `SELECT spectrum, was, sample FROM reassignment WHERE decision = ?`,
   )
+  const approved = db.prepare<[number], { sample: string; instrument: string }>(
+    `SELECT sample, instrument FROM reference_set WHERE decision = ?`,
+  )
   const unfollowed = db.prepare<[], StoredDecision>(
     `SELECT id, at, by, what, subject, why FROM decision
       WHERE what IN ('exclude', 'restore', 'reassign', 'approve-reference')
@@ -83,6 +86,10 @@ export const decisions = (db: Db) => {
       reassign.run({ decision, ...row })
     },
     reassignmentOf: (decision: number): Reassignment | null => reassigned.get(decision) ?? null,
+
+    /** The references that a decision fixed. */
+    approvedBy: (decision: number): readonly { readonly sample: string; readonly instrument: string }[] =>
+      approved.all(decision),
 
     /** Decisions that change what is judged, of which the daemon has not drawn the consequences, oldest first. */
     unfollowed: (): readonly StoredDecision[] => unfollowed.all(),

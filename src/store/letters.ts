@@ -61,6 +61,10 @@ export const letters = (db: Db) => {
     `SELECT facts, EXISTS (SELECT 1 FROM letter_recipient t WHERE t.letter = letter.id) AS told
        FROM letter WHERE alarm = ? ORDER BY id DESC LIMIT 1`,
   )
+  const lastTold = db.prepare<[number], { facts: string }>(
+    `SELECT facts FROM letter WHERE alarm = ? AND EXISTS (SELECT 1 FROM letter_recipient t WHERE t.letter = letter.id)
+      ORDER BY id DESC LIMIT 1`,
+  )
   const nextDue = db.prepare<[], { at: number | null }>(
     `SELECT min(next_attempt_at) AS at FROM letter_recipient WHERE state = 'waiting'`,
   )
@@ -123,6 +127,13 @@ export const letters = (db: Db) => {
       const row = last.get(alarm)
       const facts = row === undefined ? null : (JSON.parse(row.facts) as LetterFacts)
       return facts?.kind === 'alarm' ? { facts, told: row!.told === 1 } : null
+    },
+
+    /** What people last heard of an alarm; null when they have heard nothing. */
+    lastTold: (alarm: number): AlarmFacts | null => {
+      const row = lastTold.get(alarm)
+      const facts = row === undefined ? null : (JSON.parse(row.facts) as LetterFacts)
+      return facts?.kind === 'alarm' ? facts : null
     },
 
     /** When the next letter is due; null when none waits. */

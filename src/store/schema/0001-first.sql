@@ -103,13 +103,14 @@ CREATE TABLE analysis (
 ) STRICT;
 CREATE INDEX analysis_by_spectrum ON analysis (spectrum, id);
 
--- The spectra of a sample's reference, frozen when complete; the newest row counts.
+-- The spectra of a sample's reference, frozen when complete, or by a person's decision; the newest row counts.
 CREATE TABLE reference_set (
   id         INTEGER PRIMARY KEY,
   sample     TEXT NOT NULL,
   instrument TEXT NOT NULL,
   spectra    TEXT NOT NULL,
-  at         INTEGER NOT NULL
+  at         INTEGER NOT NULL,
+  decision   INTEGER REFERENCES decision (id)
 ) STRICT;
 CREATE INDEX reference_set_by_sample ON reference_set (sample, instrument, id);
 
