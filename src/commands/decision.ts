@@ -56,7 +56,7 @@ export const isoTime = (ms: number): string => `${new Date(ms).toISOString().sli
 export const whenFollowed = (option: string | undefined): string =>
   whoHolds(dataPlaceOf(option).dataFolder) === null
     ? 'no daemon is running: it follows at its next start'
-    : 'the daemon follows within ten seconds'
+    : 'the daemon follows within seconds'
 
 /** A time as people write it, in the room's zone where it names none. Epoch milliseconds. */
 export const timeMs = (option: string, text: string, timeZone: string): number => {

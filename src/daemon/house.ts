@@ -82,6 +82,17 @@ export const openHouse = (configFolder: string, log: Logger) => {
       escalate(stations)
     })
 
+  let heard = 0
+  /** People decide in processes of their own: what they said is followed at once, not with the next tick. */
+  const hearDecisions = (): Promise<boolean> =>
+    minding('decisions', 'what people decided could not be read', async () => {
+      const newest = store.decisions.newest()
+      if (newest === heard) return
+      heard = newest
+      working.kick()
+      if (await judgeTimes()) sending.kick()
+    })
+
   const note = (): void => {
     const waiting = intake?.waiting() ?? []
     const body: DaemonNote = {
@@ -164,6 +175,7 @@ export const openHouse = (configFolder: string, log: Logger) => {
     work: working.run,
     sendLetters: sending.run,
     judgeTimes,
+    hearDecisions,
 
     close: async (): Promise<void> => {
       await intake?.stop()

@@ -63,6 +63,7 @@ export const decisions = (db: Db) => {
       WHERE what IN ('exclude', 'restore', 'reassign', 'approve-reference')
         AND id > coalesce((SELECT max(decision) FROM decision_followed), 0) ORDER BY id`,
   )
+  const newest = db.prepare<[], { id: number | null }>(`SELECT max(id) AS id FROM decision`)
   const follow = db.prepare(`INSERT INTO decision_followed (decision, at, note) VALUES (?, ?, ?)`)
   const takeOut = db.prepare(
     `INSERT INTO out_of_service (decision, of, subject, since, until) VALUES (@decision, @of, @subject, @since, @until)`,
@@ -93,6 +94,8 @@ export const decisions = (db: Db) => {
 
     /** Decisions that change what is judged, of which the daemon has not drawn the consequences, oldest first. */
     unfollowed: (): readonly StoredDecision[] => unfollowed.all(),
+    /** Number of the newest decision; 0 when nobody has decided anything. */
+    newest: (): number => newest.get()?.id ?? 0,
     markFollowed: (decision: number, at: number, note: string | null = null): void => {
       follow.run(decision, at, note)
     },
