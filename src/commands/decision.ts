@@ -40,10 +40,10 @@ export const refusal = (at: string, what: string, remedy: string, exit: ExitCode
 export const spectrumOf = (text: string, store: Store): StoredSpectrum => {
   const id = Number(text)
   if (!Number.isInteger(id) || id < 1)
-    throw usageFault('SPECTRUM', `${text} is no number of a spectrum`, '`tendq history SAMPLE --json` shows them')
+    throw usageFault('SPECTRUM', `${text} is no number of a spectrum`, '`tendq history SAMPLE` shows them')
   const found = store.spectra.get(id)
   if (found === null)
-    throw refusal(`spectrum ${id}`, 'there is no such spectrum', '`tendq history SAMPLE --json` shows the numbers')
+    throw refusal(`spectrum ${id}`, 'there is no such spectrum', '`tendq history SAMPLE` shows the numbers')
   return found
 }
 

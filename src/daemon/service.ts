@@ -136,5 +136,7 @@ const unshelveIfDue = (alarm: StoredAlarm, at: number, stations: Stations): Alar
 const untoldOf = ({ id, state }: StoredAlarm, { store }: Stations): AlarmFacts | null => {
   if (state !== 'unacknowledged') return null
   const last = store.letters.last(id)
-  return last === null || last.told ? null : { ...last.facts, event: 'raised' }
+  // in the letter of another alarm it may have been told since
+  if (last === null || last.told || store.alarms.happened(id, 'told', last.at)) return null
+  return { ...last.facts, event: 'raised' }
 }

@@ -57,8 +57,8 @@ export const letters = (db: Db) => {
   const lastFacts = db.prepare<[number], { facts: string }>(
     `SELECT facts FROM letter WHERE alarm = ? ORDER BY id DESC LIMIT 1`,
   )
-  const last = db.prepare<[number], { facts: string; told: number }>(
-    `SELECT facts, EXISTS (SELECT 1 FROM letter_recipient t WHERE t.letter = letter.id) AS told
+  const last = db.prepare<[number], { facts: string; told: number; created_at: number }>(
+    `SELECT facts, created_at, EXISTS (SELECT 1 FROM letter_recipient t WHERE t.letter = letter.id) AS told
        FROM letter WHERE alarm = ? ORDER BY id DESC LIMIT 1`,
   )
   const lastTold = db.prepare<[number], { facts: string }>(
@@ -123,10 +123,10 @@ export const letters = (db: Db) => {
     },
 
     /** The newest letter about an alarm, and whether it went to anybody: what is silent keeps its facts without. */
-    last: (alarm: number): { readonly facts: AlarmFacts; readonly told: boolean } | null => {
+    last: (alarm: number): { readonly facts: AlarmFacts; readonly told: boolean; readonly at: number } | null => {
       const row = last.get(alarm)
       const facts = row === undefined ? null : (JSON.parse(row.facts) as LetterFacts)
-      return facts?.kind === 'alarm' ? { facts, told: row!.told === 1 } : null
+      return facts?.kind === 'alarm' ? { facts, told: row!.told === 1, at: row!.created_at } : null
     },
 
     /** What people last heard of an alarm; null when they have heard nothing. */
