@@ -98,6 +98,7 @@ const newestOf = async (
     ].map(({ spectrum }) => spectrum)
   })
   const ids = new Set([...newest, ...(moved === null || store.decisions.isExcluded(moved) ? [] : [moved])])
-  const again = await Promise.all([...ids].map((id) => analysedAgain(id, stations)))
-  return again.flatMap((one) => one ?? []).toSorted((a, b) => a.identity.measuredAt - b.identity.measuredAt)
+  const again: Again[] = []
+  for (const id of ids) again.push(...[await analysedAgain(id, stations)].flatMap((one) => one ?? []))
+  return again.toSorted((a, b) => a.identity.measuredAt - b.identity.measuredAt)
 }

@@ -139,7 +139,8 @@ const gathering = (db: Db): readonly string[] =>
   db
     .prepare<[number], { line: string }>(
       `SELECT s.sample || ' on ' || s.instrument || ': ' || min(j.what) AS line
-         FROM spectrum_now s JOIN judgement j ON j.spectrum = s.id AND j.outcome = 'gathering'
+         FROM spectrum_now s JOIN judgement j ON j.spectrum = s.id AND j.id > s.judged_before AND j.outcome = 'gathering'
+          AND j.id = (SELECT max(id) FROM judgement WHERE spectrum = j.spectrum AND rule = j.rule)
         WHERE s.id IN (SELECT max(id) FROM spectrum_now WHERE sample IS NOT NULL GROUP BY sample, instrument)
         GROUP BY s.id ORDER BY s.sample LIMIT ?`,
     )

@@ -269,3 +269,20 @@ describe('a time out of service', () => {
     expect(codes[3]!.stderr).toMatch(/there is no study agign; the configuration names aging/)
   })
 })
+
+describe('a study that wants its references approved', () => {
+  it('compares with nothing until a person has approved, and says what to do', async () => {
+    const room = testRoom()
+    room.write('studies/aging.yaml', `${room.read('studies/aging.yaml')}approve-reference: true\n`)
+    await measure(room, [0, 1, 2, 3], 0)
+    const last = () =>
+      room.rows<{ outcome: string; what: string }>(
+        `SELECT outcome, what FROM judgement WHERE rule = 'first-band-shift' ORDER BY id DESC LIMIT 1`,
+      )[0]!
+    expect(last().outcome).toBe('undecided')
+    expect(last().what).toMatch(/awaits approval: tendq approve-reference AGE-1 --instrument uv1/)
+    await room.run(['approve-reference', 'AGE-1', '--by', 'Ines', '--why', 'looked at all three'])
+    await follow(room)
+    expect(last().outcome).toBe('clears')
+  })
+})
