@@ -75,9 +75,9 @@ const saySpecies = (species: Species): string => {
 }
 
 const sayReference = (study: Study): string =>
-  `${sayKind(study)}${study.approveReference === true ? ', once a person has approved it' : ''}`
+  `${sayComparison(study)}${study.approveReference === true ? ', once a person has approved it' : ''}`
 
-const sayKind = ({ reference }: Study): string => {
+const sayComparison = ({ reference }: Study): string => {
   switch (reference.kind) {
     case 'first':
       return `compared with the mean of the first ${reference.occasions} occasions, per sample and instrument`

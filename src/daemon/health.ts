@@ -61,7 +61,8 @@ export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
       `SELECT (SELECT count(*) FROM spectrum) AS spectra,
               (SELECT count(*) FROM intake WHERE outcome IS NULL) AS pending,
               (SELECT count(*) FROM intake WHERE outcome = 'repeated' AND received_at >= ?) AS repeated,
-              (SELECT count(*) FROM alarm WHERE state <> 'normal') AS alarms,
+              (SELECT count(*) FROM alarm WHERE state <> 'normal' AND (active OR latched OR state NOT IN
+                 ('shelved', 'suppressed-by-design', 'out-of-service'))) AS alarms,
               (SELECT max(received_at) FROM intake WHERE outcome = 'stored') AS last`,
     )
     .get(recent)!
