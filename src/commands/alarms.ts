@@ -55,6 +55,7 @@ Example:
     .argument('<id>')
     .option('--json', 'one JSON object')
     .option('--config <folder>', 'configuration folder')
+    .addHelpText('after', '\nExample:\n  tendq alarms show 3')
     .action((id: string, _: unknown, command: Command) => showAlarm(id, command.optsWithGlobals()))
   alarms
     .command('acknowledge')
@@ -63,6 +64,7 @@ Example:
     .requiredOption('--by <who>', 'your name')
     .option('--note <text>', 'what you found or will do', '')
     .option('--config <folder>', 'configuration folder')
+    .addHelpText('after', '\nExample:\n  tendq alarms acknowledge 3 --by Ines --note "taking a second spectrum"')
     .action((id: string, _: unknown, command: Command) =>
       decide(id, 'acknowledge', command.optsWithGlobals<DecisionOptions>()),
     )
@@ -74,6 +76,7 @@ Example:
     .requiredOption('--by <who>', 'your name')
     .option('--note <text>', 'why', '')
     .option('--config <folder>', 'configuration folder')
+    .addHelpText('after', '\nExample:\n  tendq alarms shelve 3 --for 8h --by Ines --note "oven door repaired tonight"')
     .action((id: string, _: unknown, command: Command) =>
       shelve(id, command.optsWithGlobals<DecisionOptions & { for: string }>()),
     )
@@ -84,6 +87,7 @@ Example:
     .requiredOption('--by <who>', 'your name')
     .option('--note <text>', 'why', '')
     .option('--config <folder>', 'configuration folder')
+    .addHelpText('after', '\nExample:\n  tendq alarms unshelve 3 --by Ines')
     .action((id: string, _: unknown, command: Command) =>
       decide(id, 'unshelve', command.optsWithGlobals<DecisionOptions>()),
     )
@@ -94,6 +98,7 @@ Example:
     .requiredOption('--by <who>', 'your name')
     .option('--note <text>', 'why', '')
     .option('--config <folder>', 'configuration folder')
+    .addHelpText('after', '\nExample:\n  tendq alarms reset 3 --by Ines --note "cell replaced"')
     .action((id: string, _: unknown, command: Command) =>
       decide(id, 'reset', command.optsWithGlobals<DecisionOptions>()),
     )

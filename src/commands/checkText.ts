@@ -74,7 +74,10 @@ const saySpecies = (species: Species): string => {
   return `${species.title}, ${species.geometry}${spin} ${species.ion}: ${bands.length === 0 ? 'no bands expected' : bands.join(', ')}`
 }
 
-const sayReference = ({ reference }: Study): string => {
+const sayReference = (study: Study): string =>
+  `${sayComparison(study)}${study.approveReference === true ? ', once a person has approved it' : ''}`
+
+const sayComparison = ({ reference }: Study): string => {
   switch (reference.kind) {
     case 'first':
       return `compared with the mean of the first ${reference.occasions} occasions, per sample and instrument`

@@ -1,71 +1,42 @@
 import type { Command } from 'commander'
-import { dataPlaceOf } from '../daemon/room.ts'
-import { EXIT, FaultError } from '../fault.ts'
-import { openStoreBeside, storeOn } from '../store/index.ts'
-import { printLine, usageFault } from './print.ts'
-
-interface Options {
-  readonly by: string
-  readonly why: string
-  readonly config?: string
-}
+import { type DecisionOptions, decideBeside, refusal, sayOf, spectrumOf, whenFollowed, withWho } from './decision.ts'
+import { printLine } from './print.ts'
 
 export const addExclude = (program: Command): void => {
-  program
-    .command('exclude')
+  withWho(program.command('exclude'))
     .summary('keep a spectrum visible but out of statistics')
-    .description('Keeps a spectrum visible but out of references and windows. The next spectrum is judged without it.')
+    .description(
+      'Keeps a spectrum visible but out of references, windows and charts. The newest spectrum that still counts is judged again, so that no alarm goes on ringing for the excluded one.',
+    )
     .argument('<spectrum>', 'its number in the history')
-    .requiredOption('--by <who>', 'your name')
-    .requiredOption('--why <text>', 'the reason, kept for ever')
-    .option('--config <folder>', 'configuration folder')
     .addHelpText('after', '\nExample:\n  tendq exclude 17 --by Ines --why "measured an empty cell"')
-    .action((spectrum: string, options: Options) => decide('exclude', spectrum, options))
+    .action((spectrum: string, options: DecisionOptions) => decide('exclude', spectrum, options))
 }
 
 export const addRestore = (program: Command): void => {
-  program
-    .command('restore')
+  withWho(program.command('restore'))
     .summary('take an exclusion back')
-    .description('Takes a spectrum into references and windows again.')
+    .description('Takes a spectrum into references, windows and charts again.')
     .argument('<spectrum>', 'its number in the history')
-    .requiredOption('--by <who>', 'your name')
-    .requiredOption('--why <text>', 'the reason, kept for ever')
-    .option('--config <folder>', 'configuration folder')
     .addHelpText('after', '\nExample:\n  tendq restore 17 --by Ines --why "it was the right cell after all"')
-    .action((spectrum: string, options: Options) => decide('restore', spectrum, options))
+    .action((spectrum: string, options: DecisionOptions) => decide('restore', spectrum, options))
 }
 
-/** A row among the decisions: statistics follow with the next spectrum that is judged. */
-const decide = (what: 'exclude' | 'restore', text: string, { by, why, config }: Options): void => {
-  const id = Number(text)
-  if (!Number.isInteger(id) || id < 1)
-    throw usageFault('SPECTRUM', `${text} is no number of a spectrum`, '`tendq history SAMPLE --json` shows them')
-  for (const [option, value] of Object.entries({ '--by': by, '--why': why }))
-    if (value.trim() === '') throw usageFault(option, 'it is empty', 'a decision is kept with who and why')
-  const store = storeOn(openStoreBeside(dataPlaceOf(config).dataFolder))
-  try {
-    store.atomically(() => {
-      if (store.spectra.get(id) === null)
-        throw new FaultError(
-          [
-            {
-              code: 'no-such-spectrum',
-              place: { at: `spectrum ${id}` },
-              what: 'there is no such spectrum',
-              remedy: '`tendq history SAMPLE --json` shows the numbers',
-            },
-          ],
-          EXIT.usage,
-        )
-      store.records.decide(Date.now(), by, what, `spectrum ${id}`, why)
-    })
-  } finally {
-    store.close()
-  }
+const decide = (what: 'exclude' | 'restore', text: string, options: DecisionOptions): void => {
+  const spectrum = decideBeside(options, (store) => {
+    const found = spectrumOf(text, store)
+    if (store.decisions.isExcluded(found.id) === (what === 'exclude'))
+      throw refusal(
+        `spectrum ${found.id}`,
+        what === 'exclude' ? 'it is excluded already' : 'it is not excluded',
+        'nothing needs to be done; `tendq history` marks what is excluded',
+      )
+    store.records.decide(Date.now(), options.by, what, `spectrum ${found.id}`, options.why)
+    return found
+  })
   printLine(
-    what === 'exclude'
-      ? `spectrum ${id} stays visible and is out of statistics; the next spectrum of its sample is judged without it`
-      : `spectrum ${id} counts again`,
+    what === 'exclude' ? `${sayOf(spectrum)} stays visible and no longer counts` : `${sayOf(spectrum)} counts again`,
   )
+  if (spectrum.sample !== null)
+    printLine(`the newest spectrum that counts is judged again: ${whenFollowed(options.config)}`)
 }

@@ -70,7 +70,7 @@ const timeOf = (option: string, text: string | undefined, zone: string): string 
 const unknownSample = (sample: string, db: ReturnType<typeof openStoreReadOnly>): FaultError => {
   const names = db
     .prepare<[], { sample: string }>(
-      `SELECT DISTINCT sample FROM spectrum WHERE sample IS NOT NULL ORDER BY sample LIMIT 20`,
+      `SELECT DISTINCT sample FROM spectrum_now WHERE sample IS NOT NULL ORDER BY sample LIMIT 20`,
     )
     .all()
     .map((row) => printable(row.sample))
@@ -110,12 +110,16 @@ const number = (value: string | number | null | undefined, digits: number, width
 
 const printTable = (rows: readonly HistoryRow[]): void => {
   printLine(
-    `${'measured at'.padEnd(20)} ${'instrument'.padEnd(10)} ${'ν1 cm⁻¹'.padStart(9)} ${'ν2 cm⁻¹'.padStart(9)} ${'Δ cm⁻¹'.padStart(9)} ${'u'.padStart(6)} ${'B cm⁻¹'.padStart(8)} ${'u'.padStart(5)}  judgement  flags`,
+    `${'no.'.padStart(5)} ${'measured at'.padEnd(20)} ${'instrument'.padEnd(10)} ${'ν1 cm⁻¹'.padStart(9)} ${'ν2 cm⁻¹'.padStart(9)} ${'Δ cm⁻¹'.padStart(9)} ${'u'.padStart(6)} ${'B cm⁻¹'.padStart(8)} ${'u'.padStart(5)}  judgement  flags`,
   )
   for (const row of rows) {
-    const flags = [...(row.excluded === 1 ? ['excluded'] : []), ...flagsOf(row)].join(', ')
+    const flags = [
+      ...(row.excluded === 1 ? ['excluded'] : []),
+      ...(typeof row.came_as === 'string' ? [`came as ${printable(row.came_as)}`] : []),
+      ...flagsOf(row),
+    ].join(', ')
     printLine(
-      `${String(row.measured_at).padEnd(20)} ${printable(String(row.instrument)).padEnd(10)} ${number(row.nu1_cm1, 1, 9)} ${number(row.nu2_cm1, 1, 9)} ${number(row.delta_cm1, 1, 9)} ${number(row.u_delta_cm1, 1, 6)} ${number(row.b_cm1, 1, 8)} ${number(row.u_b_cm1, 1, 5)}  ${String(row.judgement ?? '–').padEnd(9)}  ${flags}`.trimEnd(),
+      `${String(row.spectrum).padStart(5)} ${String(row.measured_at).padEnd(20)} ${printable(String(row.instrument)).padEnd(10)} ${number(row.nu1_cm1, 1, 9)} ${number(row.nu2_cm1, 1, 9)} ${number(row.delta_cm1, 1, 9)} ${number(row.u_delta_cm1, 1, 6)} ${number(row.b_cm1, 1, 8)} ${number(row.u_b_cm1, 1, 5)}  ${String(row.judgement ?? '–').padEnd(9)}  ${flags}`.trimEnd(),
     )
   }
 }

@@ -17,6 +17,10 @@ const COMMANDS: Readonly<Record<string, () => Promise<AddCommand>>> = {
   alarms: async () => (await import('./alarms.ts')).addAlarms,
   exclude: async () => (await import('./exclude.ts')).addExclude,
   restore: async () => (await import('./exclude.ts')).addRestore,
+  reassign: async () => (await import('./reassign.ts')).addReassign,
+  'approve-reference': async () => (await import('./approveReference.ts')).addApproveReference,
+  'out-of-service': async () => (await import('./outOfService.ts')).addOutOfService,
+  'return-to-service': async () => (await import('./returnToService.ts')).addReturnToService,
   status: async () => (await import('./status.ts')).addStatus,
   demo: async () => (await import('./demo.ts')).addDemo,
 }

@@ -74,6 +74,10 @@ const printHealth = (health: Health): void => {
     health.shelved.map((alarm) => printable(alarm)),
   )
   list(
+    'out of service, silent for a time',
+    health.out_of_service.map((subject) => printable(subject)),
+  )
+  list(
     'gathering a reference or history, no fault',
     health.gathering.map((sample) => printable(sample)),
   )

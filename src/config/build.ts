@@ -106,6 +106,7 @@ export const toStudy = (file: StudyFile): Study => ({
   ends: file.ends ?? null,
   everyMs: file.schedule === undefined || Array.isArray(file.schedule) ? null : file.schedule.every,
   scheduleMs: Array.isArray(file.schedule) ? file.schedule : null,
+  approveReference: file['approve-reference'] ?? false,
   replicatesWithinMs: file.replicates?.within ?? null,
   reference: toReference(file.reference),
   acceptance: mapped(file.acceptance, (name, { pass, look }) => ({

@@ -104,6 +104,8 @@ export interface Study {
   readonly scheduleMs: readonly number[] | null
   readonly replicatesWithinMs: number | null
   readonly reference: Reference
+  /** Nothing is compared with a reference before a person has approved it. */
+  readonly approveReference?: boolean
   /** By quantity name of the rule language; bounds in that quantity's unit (max1 … in nm as typed are kept in cm⁻¹ ascending). */
   readonly acceptance: Readonly<
     Record<string, { readonly pass: readonly [number, number]; readonly look: readonly [number, number] | null }>

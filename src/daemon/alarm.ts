@@ -6,6 +6,7 @@ import { type AlarmKey, lifeOf, type StoredAlarm, withLife } from '../store/alar
 import type { RuleSubject } from '../store/judgements.ts'
 import type { JustKept } from './judge.ts'
 import type { Stations } from './pipeline.ts'
+import { followService, keepUntold, outOfService } from './service.ts'
 import { factsOf, messageOf, type UntoldFacts } from './tell.ts'
 
 export interface Judged {
@@ -61,6 +62,18 @@ export const moveAlarm = (
   key: AlarmKey,
   isActive: boolean,
   spectra: number,
+  rule: CompiledRule,
+  stations: Stations,
+  factsNow: () => UntoldFacts,
+): AlarmFacts | null => {
+  const ofService = followService(key, stations, factsNow)
+  return moveInService(key, isActive, spectra, rule, stations, factsNow) ?? ofService
+}
+
+const moveInService = (
+  key: AlarmKey,
+  isActive: boolean,
+  spectra: number,
   { definition }: CompiledRule,
   stations: Stations,
   factsNow: () => UntoldFacts,
@@ -70,7 +83,7 @@ export const moveAlarm = (
     ...key,
     study: null,
     priority: definition.priority,
-    state: 'normal',
+    state: outOfService(key, stations) === null ? 'normal' : 'out-of-service',
     active: false,
     latch: definition.latch,
     latched: false,
@@ -110,6 +123,7 @@ export const moveAlarm = (
   })
   store.alarms.event(id, at, isActive ? 'raised' : 'returned', 'tendq', message)
   const { notice } = step
+  if (notice === 'none' && isActive) keepUntold({ ...facts, alarm: id, event: 'raised' }, stations)
   return notice === 'raised' || notice === 'returned' || notice === 're-alarmed'
     ? { ...facts, alarm: id, event: notice }
     : null

@@ -1,3 +1,4 @@
+import { decisions } from '../store/decisions.ts'
 import { type Db, whoHolds } from '../store/index.ts'
 
 /** What the daemon notes of itself, for `status` and the health page to read from another process. */
@@ -39,6 +40,8 @@ export interface Health extends DaemonNote {
   }[]
   /** Alarms that a person has silenced for a time. */
   readonly shelved: readonly string[]
+  /** Instruments, samples and studies whose alarms are silent now, or will be, with the end, who and why. */
+  readonly out_of_service: readonly string[]
   readonly gathering: readonly string[]
   readonly unknown_samples: readonly string[]
 }
@@ -58,7 +61,8 @@ export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
       `SELECT (SELECT count(*) FROM spectrum) AS spectra,
               (SELECT count(*) FROM intake WHERE outcome IS NULL) AS pending,
               (SELECT count(*) FROM intake WHERE outcome = 'repeated' AND received_at >= ?) AS repeated,
-              (SELECT count(*) FROM alarm WHERE state <> 'normal') AS alarms,
+              (SELECT count(*) FROM alarm WHERE state <> 'normal' AND (active OR latched OR state NOT IN
+                 ('shelved', 'suppressed-by-design', 'out-of-service'))) AS alarms,
               (SELECT max(received_at) FROM intake WHERE outcome = 'stored') AS last`,
     )
     .get(recent)!
@@ -107,6 +111,7 @@ export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
     alarms: counts.alarms,
     set_aside: setAside,
     shelved: shelved(db),
+    out_of_service: outOfService(db, now),
     gathering: gathering(db),
     unknown_samples: unknownSamples(db),
   }
@@ -135,8 +140,9 @@ const gathering = (db: Db): readonly string[] =>
   db
     .prepare<[number], { line: string }>(
       `SELECT s.sample || ' on ' || s.instrument || ': ' || min(j.what) AS line
-         FROM spectrum s JOIN judgement j ON j.spectrum = s.id AND j.outcome = 'gathering'
-        WHERE s.id IN (SELECT max(id) FROM spectrum WHERE sample IS NOT NULL GROUP BY sample, instrument)
+         FROM spectrum_now s JOIN judgement j ON j.spectrum = s.id AND j.id > s.judged_before AND j.outcome = 'gathering'
+          AND j.id = (SELECT max(id) FROM judgement WHERE spectrum = j.spectrum AND rule = j.rule)
+        WHERE s.id IN (SELECT max(id) FROM spectrum_now WHERE sample IS NOT NULL GROUP BY sample, instrument)
         GROUP BY s.id ORDER BY s.sample LIMIT ?`,
     )
     .all(LISTED)
@@ -152,11 +158,22 @@ const shelved = (db: Db): readonly string[] =>
     .all(LISTED)
     .map(({ line }) => line)
 
+const outOfService = (db: Db, now: number): readonly string[] => {
+  const iso = (ms: number): string => `${new Date(ms).toISOString().slice(0, 19)}Z`
+  return decisions(db)
+    .periodsNotOver(now)
+    .slice(0, LISTED)
+    .map(
+      ({ of, subject, since, until, by, why }) =>
+        `${of} ${subject} ${since > now ? `from ${iso(since)} ` : ''}until ${iso(until)}, by ${by}: ${why}`,
+    )
+}
+
 const unknownSamples = (db: Db): readonly string[] =>
   db
     .prepare<[number], { sample: string }>(
-      `SELECT coalesce(sample, '(no name)') AS sample FROM spectrum
-        WHERE NOT EXISTS (SELECT 1 FROM analysis WHERE analysis.spectrum = spectrum.id) GROUP BY 1 ORDER BY 1 LIMIT ?`,
+      `SELECT coalesce(sample, '(no name)') AS sample FROM spectrum_now s
+        WHERE NOT EXISTS (SELECT 1 FROM analysis a WHERE a.spectrum = s.id AND a.id > s.analysed_before) GROUP BY 1 ORDER BY 1 LIMIT ?`,
     )
     .all(LISTED)
     .map(({ sample }) => sample)

@@ -6,13 +6,14 @@ import type { DropFolder, Intake, IntakeEvent, IntakeOptions, IntakePorts } from
 import { holdDataFolder, openStore, storeOn } from '../store/index.ts'
 import { escalate } from './escalate.ts'
 import { singleFlight } from './flight.ts'
+import { followDecisions } from './follow.ts'
 import type { DaemonNote } from './health.ts'
 import { judgeOverdueSamples } from './overdue.ts'
 import { processPending, type Stations } from './pipeline.ts'
 import { startPool } from './pool.ts'
 import { sendDue } from './post.ts'
 import { loadRoom, type RoomInForce } from './room.ts'
-import { unshelveWhatIsDue } from './shelf.ts'
+import { followClock } from './service.ts'
 
 export type Stop = () => void | Promise<void>
 
@@ -64,6 +65,7 @@ export const openHouse = (configFolder: string, log: Logger) => {
   const working = singleFlight(async () => {
     const kept = await minding('storage', 'outcomes could not be kept, they will be tried again', async () => {
       await processPending(stations)
+      if ((await followDecisions(stations)) > 0) sending.kick()
     })
     if (!kept) setTimeout(() => working.kick(), RETRY_MS).unref()
   })
@@ -76,8 +78,19 @@ export const openHouse = (configFolder: string, log: Logger) => {
   const judgeTimes = (): Promise<boolean> =>
     minding('overdue', 'what the clock decides could not be judged', () => {
       judgeOverdueSamples(stations)
-      unshelveWhatIsDue(stations)
+      followClock(stations)
       escalate(stations)
+    })
+
+  let heard = 0
+  /** People decide in processes of their own: what they said is followed at once, not with the next tick. */
+  const hearDecisions = (): Promise<boolean> =>
+    minding('decisions', 'what people decided could not be read', async () => {
+      const newest = store.decisions.newest()
+      if (newest === heard) return
+      heard = newest
+      working.kick()
+      if (await judgeTimes()) sending.kick()
     })
 
   const note = (): void => {
@@ -162,6 +175,7 @@ export const openHouse = (configFolder: string, log: Logger) => {
     work: working.run,
     sendLetters: sending.run,
     judgeTimes,
+    hearDecisions,
 
     close: async (): Promise<void> => {
       await intake?.stop()

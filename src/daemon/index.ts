@@ -7,6 +7,9 @@ import { startLog } from './log.ts'
 /** How often the daemon looks up by itself: letters due, overdue samples, what it notes of itself. */
 const TICK_MS = 10_000
 
+/** How soon a person's decision is followed. */
+const HEAR_MS = 1_000
+
 /** Editors save in several steps; a configuration is read when the folder has been quiet this long. */
 const QUIET_MS = 500
 
@@ -29,6 +32,8 @@ export const runDaemon = async (configFolder: string): Promise<void> => {
     if (web !== null) stops.push(await startWeb(web, house.room().config.dataFolder, house.log))
     const ticking = setInterval(() => house.tick(), TICK_MS)
     stops.push(() => clearInterval(ticking))
+    const hearing = setInterval(() => void house.hearDecisions(), HEAR_MS)
+    stops.push(() => clearInterval(hearing))
     house.tick()
     house.log.info({ room: house.room().config.room, data: house.room().config.dataFolder }, 'the daemon is up')
     house.log.info({ signal: await asked }, 'the daemon stops')

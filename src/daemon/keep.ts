@@ -42,7 +42,7 @@ export const keep = (ready: readonly ReadyToKeep[], stations: Stations): void =>
 }
 
 /** Disk full, input/output error, busy, read-only: everything that may be mended without touching the file. */
-const isStorageFault = (error: unknown): boolean =>
+export const isStorageFault = (error: unknown): boolean =>
   /^SQLITE_(FULL|IOERR|BUSY|LOCKED|READONLY|CANTOPEN|NOMEM|CORRUPT)/.test((error as { code?: string }).code ?? '')
 
 const keepArrival = ({ inHand, analyses }: ReadyToKeep, stations: Stations): readonly Kept[] => {
@@ -87,7 +87,7 @@ const keepSpectrum = (
 }
 
 /** The first spectrum of a sample brings the recipe that was chosen on it. */
-const chosenJustNow = (
+export const chosenJustNow = (
   spectrum: number,
   { sample, instrument }: Subject,
   { locked }: Analysis,

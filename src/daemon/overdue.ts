@@ -4,8 +4,8 @@ import { judgeOverdue, judgeOverdueSchedule } from '../rules/index.ts'
 import type { CompiledRule, Outcome } from '../rules/types.ts'
 import { moveAlarm } from './alarm.ts'
 import { addLetter } from './letter.ts'
-
 import type { Stations } from './pipeline.ts'
+import { inServiceSince } from './service.ts'
 import { ruleText, type UntoldFacts } from './tell.ts'
 
 /** Judges by the clock what no spectrum can tell: that none came. One transaction for all rules and subjects. */
@@ -29,7 +29,9 @@ const judgeSamples = (rule: CompiledRule, stations: Stations): void => {
   for (const { sample, receivedAt } of store.spectra.lastReceived()) {
     const study = room().studyOf(sample)
     if (study === null || !ruleCovers(rule.definition, study.name)) continue
-    const outcome = sampleOutcome(study, timesOf(rule), sample, receivedAt, now(), stations)
+    const since = inServiceSince('sample', sample, stations)
+    if (since === null) continue
+    const outcome = sampleOutcome(study, timesOf(rule), sample, Math.max(receivedAt, since), now(), stations)
     if (outcome !== null) move(rule, 'sample', sample, outcome, receivedAt, study.name, stations)
   }
 }
@@ -55,7 +57,10 @@ const judgeInstruments = (rule: CompiledRule, stations: Stations): void => {
   for (const { name, everyMs } of room().config.instruments) {
     const last = store.arrivals.lastReceivedAt(name)
     if (everyMs === null || last === null) continue
-    move(rule, 'instrument', name, judgeOverdue(timesOf(rule), everyMs, last, now()), last, null, stations)
+    const since = inServiceSince('instrument', name, stations)
+    if (since === null) continue
+    const outcome = judgeOverdue(timesOf(rule), everyMs, Math.max(last, since), now())
+    move(rule, 'instrument', name, outcome, last, null, stations)
   }
 }
 

@@ -26,7 +26,7 @@ const ofSample = (subject: Subject, stations: Stations): ReferenceState => {
   const { store, now } = stations
   const { sample, instrument } = subject
   const frozen = store.recipes.frozenReference(sample, instrument.name)
-  if (frozen !== null) return stateOf(occasionsOfRows(store.analyses.some(frozen), subject, store))
+  if (frozen !== null) return stateOf(occasionsOfRows(store.analyses.some(frozen, sample), subject, store))
   const recipe = store.recipes.of(sample, instrument.name)
   const need = occasionsNeeded(subject)
   if (recipe === null) return { kind: 'gathering', have: 0, need }
@@ -37,6 +37,11 @@ const ofSample = (subject: Subject, stations: Stations): ReferenceState => {
   const n = subject.study.reference.kind === 'sample' ? Math.min(need, occasions.length) : need
   if (occasions.length < n || n === 0) return { kind: 'gathering', have: occasions.length, need: Math.max(n, 1) }
   const state = referenceOf(occasions, n)
+  if (state.kind === 'ready' && subject.study.approveReference === true)
+    return {
+      kind: 'refused',
+      why: `it awaits approval: tendq approve-reference ${sample} --instrument ${instrument.name}`,
+    }
   if (state.kind === 'ready') {
     const spectra = occasions.slice(0, n).flatMap((occasion) => occasion.spectra)
     store.recipes.freezeReference(sample, instrument.name, spectra, now())

@@ -98,6 +98,7 @@ export const alarmList = (db: Db) => {
   )
   const byId = db.prepare<[number], AlarmRow>(`SELECT * FROM alarm WHERE id = ?`)
   const active = db.prepare<[], AlarmRow>(`SELECT * FROM alarm WHERE state <> 'normal' ORDER BY id`)
+  const every = db.prepare<[], AlarmRow>(`SELECT * FROM alarm ORDER BY id`)
   const put = db.prepare(
     `INSERT INTO alarm (rule, of, subject, study, priority, state, active, latch, latched, shelved_until, raised_at, acknowledged_at,
                         acknowledged_by, returned_at, spectra, diagnosis, confidence, message)
@@ -136,6 +137,9 @@ export const alarmList = (db: Db) => {
 
     /** Every alarm that is not in the state `normal`. */
     standing: (): readonly StoredAlarm[] => active.all().map(fromRow),
+
+    /** Every alarm that ever rang. */
+    all: (): readonly StoredAlarm[] => every.all().map(fromRow),
 
     /** Writes the alarm's new state and returns its id. */
     put: (alarm: Omit<StoredAlarm, 'id'>): number =>

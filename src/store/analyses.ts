@@ -1,6 +1,7 @@
 import { analysisJson } from '../analysis/json.ts'
 import type { Measured } from '../analysis/quantities.ts'
 import type { Analysis } from '../analysis/types.ts'
+import { IN_STATISTICS } from './decisions.ts'
 import type { Db } from './open.ts'
 
 export interface NewAnalysis {
@@ -70,16 +71,10 @@ const COLUMNS = [
   ...[VALUES, UNCERTAINTIES, MAXIMA].flatMap(Object.keys),
 ]
 
-/** Not excluded by a person, not superseded by a longer version of its file. */
-const IN_STATISTICS = `
-  coalesce((SELECT what FROM decision WHERE subject = 'spectrum ' || s.id AND what IN ('exclude', 'restore')
-             ORDER BY id DESC LIMIT 1), 'restore') = 'restore'
-  AND (SELECT outcome FROM arrival_outcome o WHERE o.arrival = s.arrival ORDER BY o.id DESC LIMIT 1) IS NOT 'superseded'`
-
 const WINDOW = `
   SELECT s.id AS spectrum, s.measured_at, r.received_at, a.quantities
-  FROM spectrum s JOIN arrival r ON r.id = s.arrival
-  JOIN analysis a ON a.id = (SELECT max(id) FROM analysis WHERE spectrum = s.id)`
+  FROM spectrum_now s JOIN arrival r ON r.id = s.arrival
+  JOIN analysis a ON a.id = (SELECT max(id) FROM analysis WHERE spectrum = s.id AND id > s.analysed_before)`
 
 const windowRow = (row: WindowSqlRow): WindowRow => ({
   spectrum: row.spectrum,
@@ -119,8 +114,9 @@ export const analyses = (db: Db) => {
   >(`${WINDOW}
      WHERE s.instrument = @instrument AND s.measured_at <= @until AND a.engine = @engine AND ${IN_STATISTICS}
      ORDER BY s.measured_at DESC, s.id DESC LIMIT @limit`)
-  const some = db.prepare<[string], WindowSqlRow>(
-    `${WINDOW} WHERE s.id IN (SELECT value FROM json_each(?)) AND ${IN_STATISTICS} ORDER BY s.measured_at, s.id`,
+  const some = db.prepare<{ ids: string; sample: string }, WindowSqlRow>(
+    `${WINDOW} WHERE s.id IN (SELECT value FROM json_each(@ids)) AND s.sample = @sample AND ${IN_STATISTICS}
+     ORDER BY s.measured_at, s.id`,
   )
 
   return {
@@ -176,7 +172,8 @@ export const analyses = (db: Db) => {
         .map(windowRow)
         .reverse(),
 
-    /** These spectra, oldest first, excluded and superseded ones left out. */
-    some: (ids: readonly number[]): readonly WindowRow[] => some.all(JSON.stringify(ids)).map(windowRow),
+    /** Those of these spectra that are still the sample's, oldest first; excluded and superseded ones left out. */
+    some: (ids: readonly number[], sample: string): readonly WindowRow[] =>
+      some.all({ ids: JSON.stringify(ids), sample }).map(windowRow),
   }
 }

@@ -55,6 +55,7 @@ export const arrivals = (db: Db) => {
     `SELECT arrival.id, (SELECT outcome FROM arrival_outcome o WHERE o.arrival = arrival.id ORDER BY o.id DESC LIMIT 1) AS outcome
        FROM arrival WHERE instrument = ? AND sha256 = ? AND id < ? ORDER BY id LIMIT 1`,
   )
+  const one = db.prepare<[number], ArrivalRow>(`${ARRIVAL} WHERE id = ?`)
   const pending = db.prepare<[number], ArrivalRow>(`${ARRIVAL} WHERE ${NO_OUTCOME} ORDER BY id LIMIT ?`)
   const pendingCount = db.prepare<[], { n: number }>(`SELECT count(*) AS n FROM arrival WHERE ${NO_OUTCOME}`)
   const lastReceived = db.prepare<[string], { at: number | null }>(
@@ -101,6 +102,11 @@ export const arrivals = (db: Db) => {
 
     /** An earlier arrival of the same bytes on the same instrument, whatever its name. */
     sameBefore: (arrival: StoredArrival) => earlierSame.get(arrival.instrument, arrival.sha256, arrival.id) ?? null,
+
+    get: (id: number): StoredArrival | null => {
+      const row = one.get(id)
+      return row === undefined ? null : stored(row)
+    },
 
     /** Arrivals without an outcome, in order of arrival: what a crash or a backlog left to do. */
     pending: (limit: number): readonly StoredArrival[] => pending.all(limit).map(stored),

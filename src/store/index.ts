@@ -1,6 +1,7 @@
 import { alarmList } from './alarms.ts'
 import { analyses } from './analyses.ts'
 import { arrivals } from './arrivals.ts'
+import { decisions } from './decisions.ts'
 import { judgements } from './judgements.ts'
 import { letters } from './letters.ts'
 import type { Db } from './open.ts'
@@ -18,6 +19,7 @@ export const storeOn = (db: Db) => ({
   alarms: alarmList(db),
   letters: letters(db),
   records: records(db),
+  decisions: decisions(db),
   /** All or nothing, and the write lock from the first statement on. */
   atomically: <T>(work: () => T): T => db.transaction(work).immediate(),
   close: (): void => {

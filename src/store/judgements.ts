@@ -1,4 +1,5 @@
 import type { Evidence } from '../rules/types.ts'
+import { IN_STATISTICS } from './decisions.ts'
 import type { Db } from './open.ts'
 
 export type JudgedAs = 'rings' | 'clears' | 'holds' | 'gathering' | 'undecided'
@@ -32,15 +33,17 @@ export const judgements = (db: Db) => {
     RuleSubject & { before: number; limit: number },
     { outcome: JudgedAs; occasion: number }
   >(
-    `SELECT j.outcome, j.occasion, max(j.id) FROM judgement j JOIN spectrum s ON s.id = j.spectrum
+    `SELECT j.outcome, j.occasion, max(j.id) FROM judgement j JOIN spectrum_now s ON s.id = j.spectrum
       WHERE (@sample IS NULL OR s.sample = @sample) AND s.instrument = @instrument AND s.measured_at < @before
         AND j.rule = @rule AND j.occasion < @before AND j.outcome NOT IN ('gathering', 'undecided')
+        AND j.id > s.judged_before AND ${IN_STATISTICS}
       GROUP BY j.occasion ORDER BY j.occasion DESC LIMIT @limit`,
   )
   const later = db.prepare<RuleSubject & { after: number }, { n: number }>(
-    `SELECT count(*) AS n FROM spectrum s JOIN judgement j ON j.spectrum = s.id
+    `SELECT count(*) AS n FROM spectrum_now s JOIN judgement j ON j.spectrum = s.id
       WHERE (@sample IS NULL OR s.sample = @sample) AND s.instrument = @instrument AND s.measured_at > @after
-        AND j.rule = @rule AND j.occasion > @after AND j.outcome NOT IN ('gathering', 'undecided')`,
+        AND j.rule = @rule AND j.occasion > @after AND j.outcome NOT IN ('gathering', 'undecided')
+        AND j.id > s.judged_before AND ${IN_STATISTICS}`,
   )
 
   return {
@@ -48,7 +51,7 @@ export const judgements = (db: Db) => {
       add.run(row.spectrum, row.rule, row.outcome, row.what, row.occasion, JSON.stringify(row.evidence), row.at)
     },
 
-    /** Decided outcomes of earlier occasions, newest first. */
+    /** Decided outcomes of earlier occasions, newest first; those of excluded or reassigned spectra left out. */
     decidedBefore: (
       of: RuleSubject,
       occasion: number,

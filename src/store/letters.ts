@@ -1,4 +1,4 @@
-import type { LetterFacts } from '../mail/types.ts'
+import type { AlarmFacts, LetterFacts } from '../mail/types.ts'
 import type { Db } from './open.ts'
 
 export interface WaitingLetter {
@@ -57,6 +57,14 @@ export const letters = (db: Db) => {
   const lastFacts = db.prepare<[number], { facts: string }>(
     `SELECT facts FROM letter WHERE alarm = ? ORDER BY id DESC LIMIT 1`,
   )
+  const last = db.prepare<[number], { facts: string; told: number; created_at: number }>(
+    `SELECT facts, created_at, EXISTS (SELECT 1 FROM letter_recipient t WHERE t.letter = letter.id) AS told
+       FROM letter WHERE alarm = ? ORDER BY id DESC LIMIT 1`,
+  )
+  const lastTold = db.prepare<[number], { facts: string }>(
+    `SELECT facts FROM letter WHERE alarm = ? AND EXISTS (SELECT 1 FROM letter_recipient t WHERE t.letter = letter.id)
+      ORDER BY id DESC LIMIT 1`,
+  )
   const nextDue = db.prepare<[], { at: number | null }>(
     `SELECT min(next_attempt_at) AS at FROM letter_recipient WHERE state = 'waiting'`,
   )
@@ -112,6 +120,20 @@ export const letters = (db: Db) => {
     lastFacts: (alarm: number): LetterFacts | null => {
       const row = lastFacts.get(alarm)
       return row === undefined ? null : (JSON.parse(row.facts) as LetterFacts)
+    },
+
+    /** The newest letter about an alarm, and whether it went to anybody: what is silent keeps its facts without. */
+    last: (alarm: number): { readonly facts: AlarmFacts; readonly told: boolean; readonly at: number } | null => {
+      const row = last.get(alarm)
+      const facts = row === undefined ? null : (JSON.parse(row.facts) as LetterFacts)
+      return facts?.kind === 'alarm' ? { facts, told: row!.told === 1, at: row!.created_at } : null
+    },
+
+    /** What people last heard of an alarm; null when they have heard nothing. */
+    lastTold: (alarm: number): AlarmFacts | null => {
+      const row = lastTold.get(alarm)
+      const facts = row === undefined ? null : (JSON.parse(row.facts) as LetterFacts)
+      return facts?.kind === 'alarm' ? facts : null
     },
 
     /** When the next letter is due; null when none waits. */

@@ -24,10 +24,19 @@ const APPEND_ONLY = [
   'judgement',
   'alarm_event',
   'decision',
+  'decision_followed',
+  'reassignment',
+  'out_of_service',
+  'return_to_service',
   'letter',
 ] as const
 
-const KEY_OF: Readonly<Record<string, string>> = { configuration: 'sha256', content: 'sha256', recipe: 'sha256' }
+const KEY_OF: Readonly<Record<string, string>> = {
+  configuration: 'sha256',
+  content: 'sha256',
+  recipe: 'sha256',
+  decision_followed: 'decision',
+}
 
 export const databaseFile = (dataFolder: string): string => join(dataFolder, 'tendq.db')
 

@@ -19,7 +19,9 @@ export const recipes = (db: Db) => {
     `SELECT c.recipe AS sha256, c.locked, r.body FROM recipe_choice c JOIN recipe r ON r.sha256 = c.recipe
       WHERE c.sample = ? AND c.instrument = ? ORDER BY c.id DESC LIMIT 1`,
   )
-  const freeze = db.prepare(`INSERT INTO reference_set (sample, instrument, spectra, at) VALUES (?, ?, ?, ?)`)
+  const freeze = db.prepare(
+    `INSERT INTO reference_set (sample, instrument, spectra, at, decision) VALUES (?, ?, ?, ?, ?)`,
+  )
   const frozen = db.prepare<[string, string], { spectra: string }>(
     `SELECT spectra FROM reference_set WHERE sample = ? AND instrument = ? ORDER BY id DESC LIMIT 1`,
   )
@@ -46,8 +48,15 @@ export const recipes = (db: Db) => {
       return sha256
     },
 
-    freezeReference: (sample: string, instrument: string, spectra: readonly number[], at: number): void => {
-      freeze.run(sample, instrument, JSON.stringify(spectra), at)
+    /** `decision`: of the person who approved it; null where it was complete and without a slope. */
+    freezeReference: (
+      sample: string,
+      instrument: string,
+      spectra: readonly number[],
+      at: number,
+      decision: number | null = null,
+    ): void => {
+      freeze.run(sample, instrument, JSON.stringify(spectra), at, decision)
     },
 
     /** Ids of the spectra of a frozen reference; null while it is still gathering. */

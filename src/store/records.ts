@@ -23,9 +23,9 @@ export const records = (db: Db) => {
       begin.run(config.sha256, at)
     }).immediate,
 
-    decide: (at: number, by: string, what: string, subject: string, why: string): void => {
-      decide.run(at, by, what, subject, why)
-    },
+    /** A person's decision, kept for ever. Returns its number. */
+    decide: (at: number, by: string, what: string, subject: string, why: string): number =>
+      Number(decide.run(at, by, what, subject, why).lastInsertRowid),
 
     say: (subject: string, body: unknown, at: number): void => {
       say.run(subject, JSON.stringify(body), at)

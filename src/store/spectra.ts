@@ -8,6 +8,7 @@ export interface StoredSpectrum {
   readonly id: number
   readonly arrival: number
   readonly instrument: string
+  /** As the file says, or as a person has mended it. */
   readonly sample: string | null
   readonly measuredAt: number
   /** Of its identity: `time-from-file-date`. */
@@ -52,14 +53,17 @@ export const spectra = (db: Db) => {
      VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?)`,
   )
   const one = db.prepare<[number], SpectrumRow>(
-    `SELECT id, arrival, instrument, sample, measured_at, as_read, x, y, flags FROM spectrum WHERE id = ?`,
+    `SELECT id, arrival, instrument, sample, measured_at, as_read, x, y, flags FROM spectrum_now WHERE id = ?`,
   )
   const first = db.prepare<[string], { at: number | null }>(
-    `SELECT min(measured_at) AS at FROM spectrum WHERE sample = ?`,
+    `SELECT min(measured_at) AS at FROM spectrum_now WHERE sample = ?`,
   )
   const lastReceived = db.prepare<[], { sample: string; received_at: number }>(
-    `SELECT s.sample, max(r.received_at) AS received_at FROM spectrum s JOIN arrival r ON r.id = s.arrival
+    `SELECT s.sample, max(r.received_at) AS received_at FROM spectrum_now s JOIN arrival r ON r.id = s.arrival
       WHERE s.sample IS NOT NULL GROUP BY s.sample`,
+  )
+  const instruments = db.prepare<[string], { instrument: string }>(
+    `SELECT DISTINCT instrument FROM spectrum_now WHERE sample = ? ORDER BY instrument`,
   )
 
   return {
@@ -85,6 +89,9 @@ export const spectra = (db: Db) => {
     /** Every sample with the time its last spectrum arrived. */
     lastReceived: (): readonly { readonly sample: string; readonly receivedAt: number }[] =>
       lastReceived.all().map((row) => ({ sample: row.sample, receivedAt: row.received_at })),
+
+    /** Instruments that have measured the sample. */
+    instrumentsOf: (sample: string): readonly string[] => instruments.all(sample).map(({ instrument }) => instrument),
 
     get: (id: number): StoredSpectrum | null => {
       const row = one.get(id)

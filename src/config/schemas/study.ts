@@ -44,6 +44,9 @@ export const studySchema = z.strictObject({
   schedule: schedule.optional().describe('An interval, or the ages at which spectra are due'),
   replicates: z.strictObject({ within: quantity('duration', 'positive') }).optional(),
   reference: reference.prefault({ first: '5' }),
+  'approve-reference': flag()
+    .optional()
+    .describe('A person approves each reference before anything is compared with it'),
   acceptance: z
     .record(z.string(), z.strictObject({ pass: pairOfQuantities(), look: pairOfQuantities().optional() }))
     .prefault({})

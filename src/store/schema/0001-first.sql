@@ -103,13 +103,14 @@ CREATE TABLE analysis (
 ) STRICT;
 CREATE INDEX analysis_by_spectrum ON analysis (spectrum, id);
 
--- The spectra of a sample's reference, frozen when complete; the newest row counts.
+-- The spectra of a sample's reference, frozen when complete, or by a person's decision; the newest row counts.
 CREATE TABLE reference_set (
   id         INTEGER PRIMARY KEY,
   sample     TEXT NOT NULL,
   instrument TEXT NOT NULL,
   spectra    TEXT NOT NULL,
-  at         INTEGER NOT NULL
+  at         INTEGER NOT NULL,
+  decision   INTEGER REFERENCES decision (id)
 ) STRICT;
 CREATE INDEX reference_set_by_sample ON reference_set (sample, instrument, id);
 
@@ -176,6 +177,46 @@ CREATE TABLE decision (
   what    TEXT NOT NULL,
   subject TEXT NOT NULL,
   why     TEXT NOT NULL
+) STRICT;
+CREATE INDEX decision_by_subject ON decision (subject, what, id);
+
+-- That the daemon has drawn the consequences of a decision: judged anew what it touches. `note`: what went wrong.
+CREATE TABLE decision_followed (
+  decision INTEGER PRIMARY KEY NOT NULL REFERENCES decision (id),
+  at       INTEGER NOT NULL,
+  note     TEXT
+) STRICT;
+
+-- A spectrum's right sample; the newest row counts. Analyses and judgements up to the two ids were made under the name
+-- it had before, and no longer count.
+CREATE TABLE reassignment (
+  id              INTEGER PRIMARY KEY,
+  decision        INTEGER NOT NULL REFERENCES decision (id),
+  spectrum        INTEGER NOT NULL REFERENCES spectrum (id),
+  was             TEXT,
+  sample          TEXT NOT NULL,
+  analysed_before INTEGER NOT NULL,
+  judged_before   INTEGER NOT NULL
+) STRICT;
+CREATE INDEX reassignment_by_spectrum ON reassignment (spectrum, id);
+CREATE INDEX reassignment_by_sample ON reassignment (sample);
+
+-- An instrument, a sample or a study is out of service from `since` until `until`; a row below ends that early.
+CREATE TABLE out_of_service (
+  id       INTEGER PRIMARY KEY,
+  decision INTEGER NOT NULL REFERENCES decision (id),
+  of       TEXT NOT NULL CHECK (of IN ('instrument', 'sample', 'study')),
+  subject  TEXT NOT NULL,
+  since    INTEGER NOT NULL,
+  until    INTEGER NOT NULL CHECK (until > since)
+) STRICT;
+CREATE INDEX out_of_service_by_end ON out_of_service (until);
+
+CREATE TABLE return_to_service (
+  id       INTEGER PRIMARY KEY,
+  decision INTEGER NOT NULL REFERENCES decision (id),
+  period   INTEGER NOT NULL UNIQUE REFERENCES out_of_service (id),
+  at       INTEGER NOT NULL
 ) STRICT;
 
 -- A letter freezes facts; text is made from them at sending. One row per recipient.

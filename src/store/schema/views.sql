@@ -1,4 +1,17 @@
 -- Made anew at every start, so that a view always fits the tables it reads.
+-- Spectra under the sample's name that counts. CAST and CROSS JOIN let the planner look into both halves: a window of
+-- five spectra is read off the index, and the few reassigned ones are sorted in.
+DROP VIEW IF EXISTS spectrum_now;
+CREATE VIEW spectrum_now AS
+SELECT id, arrival, position, instrument, sample, measured_at, as_read, x, y, flags,
+       CAST(0 AS INTEGER) AS analysed_before, CAST(0 AS INTEGER) AS judged_before
+FROM spectrum WHERE id NOT IN (SELECT spectrum FROM reassignment)
+UNION ALL
+SELECT s.id, s.arrival, s.position, s.instrument, m.sample, s.measured_at, s.as_read, s.x, s.y, s.flags,
+       m.analysed_before, m.judged_before
+FROM reassignment m CROSS JOIN spectrum s ON s.id = m.spectrum
+WHERE m.id = (SELECT max(id) FROM reassignment WHERE spectrum = m.spectrum);
+
 DROP VIEW IF EXISTS history;
 CREATE VIEW history AS
 SELECT s.id AS spectrum, s.sample, a.study, a.species, s.instrument,
@@ -18,11 +31,16 @@ SELECT s.id AS spectrum, s.sample, a.study, a.species, s.instrument,
                  WHEN max(j.outcome = 'gathering') THEN 'gathering'
                  ELSE 'steady'
                END
-          FROM judgement j WHERE j.spectrum = s.id HAVING count(*) > 0) AS judgement,
-       s.position
-FROM spectrum s
+          FROM judgement j
+         WHERE j.spectrum = s.id AND j.id > s.judged_before
+           AND j.id = (SELECT max(id) FROM judgement WHERE spectrum = j.spectrum AND rule = j.rule)
+        HAVING count(*) > 0) AS judgement,
+       s.position,
+       -- the name it came with, where a person has mended it
+       (SELECT f.sample FROM spectrum f WHERE f.id = s.id AND s.id IN (SELECT spectrum FROM reassignment)) AS came_as
+FROM spectrum_now s
 JOIN arrival r ON r.id = s.arrival
-LEFT JOIN analysis a ON a.id = (SELECT max(id) FROM analysis WHERE spectrum = s.id)
+LEFT JOIN analysis a ON a.id = (SELECT max(id) FROM analysis WHERE spectrum = s.id AND id > s.analysed_before)
 LEFT JOIN recipe p ON p.sha256 = a.recipe
 LEFT JOIN decision d ON d.id = (SELECT max(id) FROM decision
                                  WHERE subject = 'spectrum ' || s.id AND what IN ('exclude', 'restore'))
@@ -52,7 +70,14 @@ SELECT alarm, strftime('%Y-%m-%dT%H:%M:%SZ', at / 1000, 'unixepoch') AS at, even
 
 DROP VIEW IF EXISTS decisions;
 CREATE VIEW decisions AS
-SELECT strftime('%Y-%m-%dT%H:%M:%SZ', at / 1000, 'unixepoch') AS at, by, what, subject, why FROM decision ORDER BY id;
+SELECT strftime('%Y-%m-%dT%H:%M:%SZ', d.at / 1000, 'unixepoch') AS at, d.by, d.what, d.subject, d.why,
+       strftime('%Y-%m-%dT%H:%M:%SZ', p.since / 1000, 'unixepoch') AS from_at,
+       strftime('%Y-%m-%dT%H:%M:%SZ', p.until / 1000, 'unixepoch') AS until_at,
+       m.was AS from_sample, m.sample AS to_sample, d.id
+FROM decision d
+LEFT JOIN out_of_service p ON p.decision = d.id
+LEFT JOIN reassignment m ON m.decision = d.id
+ORDER BY d.id;
 
 DROP VIEW IF EXISTS configurations;
 CREATE VIEW configurations AS
