@@ -1,6 +1,6 @@
 import type { Command } from 'commander'
 import { DateTime } from 'luxon'
-import { dataPlaceOf } from '../daemon/room.ts'
+import { dataPlaceOf } from '../daemon/dataPlace.ts'
 import { EXIT, type ExitCode, FaultError } from '../fault.ts'
 import { openStoreBeside, type Store, storeOn, whoHolds } from '../store/index.ts'
 import type { StoredSpectrum } from '../store/spectra.ts'

@@ -1,6 +1,6 @@
 import type { Command } from 'commander'
 import { DateTime } from 'luxon'
-import { dataPlaceOf } from '../daemon/room.ts'
+import { dataPlaceOf } from '../daemon/dataPlace.ts'
 import { EXIT, FaultError } from '../fault.ts'
 import { openStoreReadOnly } from '../store/index.ts'
 import { stringify } from './csv.ts'

@@ -1,6 +1,6 @@
 import type { Command } from 'commander'
 import { type Config, findConfigFolder, loadConfig, studyOf } from '../config/index.ts'
-import { dataPlaceOf } from '../daemon/room.ts'
+import { dataPlaceOf } from '../daemon/dataPlace.ts'
 import type { ServiceSubject } from '../store/decisions.ts'
 import type { Store } from '../store/index.ts'
 import { type DecisionOptions, decideBeside, isoTime, refusal, timeMs, withWho } from './decision.ts'

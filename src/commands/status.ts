@@ -1,6 +1,6 @@
 import type { Command } from 'commander'
+import { dataPlaceOf } from '../daemon/dataPlace.ts'
 import { type Health, healthOf } from '../daemon/health.ts'
-import { dataPlaceOf } from '../daemon/room.ts'
 import { EXIT } from '../fault.ts'
 import { openStoreReadOnly } from '../store/index.ts'
 import { exitWith, printJson, printLine } from './print.ts'

@@ -59,8 +59,10 @@ const MOLAR: Readonly<Record<string, number>> = {
 
 const scaled = (pair: Pair, table: Readonly<Record<string, number>>): number | null => {
   const q = quantity(pair)
-  const factor = q === null ? undefined : table[q.unit.toLowerCase().replace(/[·*]/g, ' ').replace(/\^/g, '')]
-  return q === null || factor === undefined ? null : Number((q.value * factor).toPrecision(12))
+  if (q === null) return null
+  const unit = q.unit.toLowerCase().replace(/[·*]/g, ' ').replace(/\^/g, '')
+  // a file may name a unit `constructor`
+  return Object.hasOwn(table, unit) ? Number((q.value * table[unit]!).toPrecision(12)) : null
 }
 
 const celsius = (pair: Pair): number | null => {
