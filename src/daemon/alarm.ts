@@ -1,3 +1,4 @@
+import { conditionAfter } from '../alarms/condition.ts'
 import { stepAlarm } from '../alarms/index.ts'
 import type { AlarmFacts } from '../mail/types.ts'
 import type { CompiledRule, Judgement } from '../rules/types.ts'
@@ -38,10 +39,8 @@ export const advanceAlarm = (judged: Judged, stations: Stations): AlarmFacts | n
   const before = store.alarms.watch(key)
   const row = outcome.kind === 'rings' ? [occasion, ...ringingBefore(of, occasion, stations)] : []
   const was = before[on] ?? false
-  // a spectrum that comes late is judged at its own place: it may ring, but later ones decide whether all is well
-  const isLate = store.judgements.hasLater(of, occasion)
-  const is =
-    outcome.kind === 'rings' ? was || row.length >= persist : outcome.kind === 'clears' && !isLate ? false : was
+  const isLate = outcome.kind === 'clears' && store.judgements.hasLater(of, occasion)
+  const is = conditionAfter(was, outcome.kind, { row: row.length, persist, isLate })
   if (is !== was) store.alarms.setWatch(key, on, is)
   const isActive = Object.entries({ ...before, [on]: is }).some(([, active]) => active)
   return moveAlarm(key, isActive, row.length, rule, stations, () => factsOf(judged, row, stations))

@@ -3,6 +3,7 @@ import type { Analysis } from '../analysis/types.ts'
 import { ENGINE } from '../analysis/types.ts'
 import { ruleCovers } from '../config/index.ts'
 import type { AlarmFacts } from '../mail/types.ts'
+import { isMeasured, type JudgedRule, judgeOccasion, lookBackOf } from '../rules/judgeOccasion.ts'
 import type { CompiledRule, Outcome } from '../rules/types.ts'
 import type { Standing, Window } from '../series/types.ts'
 import type { StoredArrival } from '../store/arrivals.ts'
@@ -25,9 +26,6 @@ export interface JustKept {
   readonly recipe: string | null
 }
 
-/** Longest history that a chart looks back on. */
-const LONGEST_LOOK_BACK = 10_000
-
 /** Every rule that concerns this spectrum's sample or instrument, inside the transaction that keeps it. */
 export const judge = (kept: JustKept, stations: Stations): void => {
   const rules = stations.room().rules.filter(({ definition }) => ruleCovers(definition, kept.subject.study.name))
@@ -44,19 +42,12 @@ export const judge = (kept: JustKept, stations: Stations): void => {
 }
 
 const judgeSample = (rules: readonly CompiledRule[], kept: JustKept, stations: Stations): void => {
-  const measured = rules.filter(isMeasured)
-  const window = windowOf(kept, measured, stations)
+  const window = windowOf(kept, rules.filter(isMeasured), stations)
   const about = { of: 'sample', subject: kept.subject.sample } as const
-  const settled = measured.map((rule) => settle(rule, window, kept, about, stations))
-  const undecided = measured.flatMap(({ definition }, i) => (settled[i]!.isMissing ? [definition.name] : []))
-  const standing = { ...standingOf(kept), undecided }
-  const always = rules
-    .filter(isAlwaysOfSample)
-    .map((rule) => settle(rule, { ...window, standing }, kept, about, stations))
-  tellTogether(
-    [...settled, ...always].flatMap(({ told }) => told ?? []),
-    stations,
+  const told = judgeOccasion(rules, window, standingOf(kept)).flatMap(
+    (judged) => settle(judged, window, kept, about, stations) ?? [],
   )
+  tellTogether(told, stations)
 }
 
 const judgeInstrument = (rules: readonly CompiledRule[], kept: JustKept, stations: Stations): void => {
@@ -64,21 +55,11 @@ const judgeInstrument = (rules: readonly CompiledRule[], kept: JustKept, station
   if (measured.length === 0) return
   const window = instrumentWindow(kept, measured, stations)
   const about = { of: 'instrument', subject: kept.subject.instrument.name } as const
-  const settled = measured.map((rule) => settle(rule, window, kept, about, stations))
-  tellTogether(
-    settled.flatMap(({ told }) => told ?? []),
-    stations,
+  const told = measured.flatMap(
+    (rule) => settle({ rule, judgement: rule.judge(window) }, window, kept, about, stations) ?? [],
   )
+  tellTogether(told, stations)
 }
-
-const isMeasured = ({ definition: { condition } }: CompiledRule): boolean =>
-  condition.kind === 'expression' || condition.kind === 'chart'
-
-const isAlwaysOfSample = ({ definition: { condition } }: CompiledRule): boolean =>
-  condition.kind === 'always' && condition.rule !== 'common-change'
-
-const lookBackOf = (rules: readonly CompiledRule[]): number =>
-  Math.min(LONGEST_LOOK_BACK, Math.max(1, ...rules.map((rule) => rule.lookBack)))
 
 /** Everything that the instrument measured of late. It has no reference: what it measures differs from sample to sample. */
 const instrumentWindow = (kept: JustKept, rules: readonly CompiledRule[], { store }: Stations): Window => {
@@ -126,16 +107,15 @@ const standingOf = ({ analysis, subject }: JustKept): Omit<Standing, 'undecided'
   expected: subject.species.bands,
 })
 
-interface Settled {
-  /** Undecided for another reason than that history is still being gathered. */
-  readonly isMissing: boolean
-  readonly told: AlarmFacts | null
-}
-
-/** Judges, writes down the judgement, and moves the alarm. */
-const settle = (rule: CompiledRule, window: Window, kept: JustKept, about: About, stations: Stations): Settled => {
+/** Writes down the judgement, and moves the alarm. Returns what is to be told, if anything is. */
+const settle = (
+  { rule, judgement }: JudgedRule,
+  window: Window,
+  kept: JustKept,
+  about: About,
+  stations: Stations,
+): AlarmFacts | null => {
   const { store, now } = stations
-  const judgement = rule.judge(window)
   const occasion = window.occasions.at(-1)?.at ?? kept.identity.measuredAt
   store.judgements.add({
     spectrum: kept.spectrum,
@@ -146,11 +126,7 @@ const settle = (rule: CompiledRule, window: Window, kept: JustKept, about: About
     evidence: judgement.evidence,
     at: now(),
   })
-  const { outcome } = judgement
-  return {
-    isMissing: outcome.kind === 'undecided' && outcome.because === 'missing',
-    told: advanceAlarm({ rule, judgement, occasion, window, kept, about }, stations),
-  }
+  return advanceAlarm({ rule, judgement, occasion, window, kept, about }, stations)
 }
 
 const judgedAs = (outcome: Outcome): JudgedAs =>

@@ -20,7 +20,7 @@ describe('average run lengths agree with published ones within 1 %', () => {
     [4, [167.68, 74.2, 26.6, 13.3, 8.38, 4.75, 3.34, 2.62, 2.19, 1.71]],
     [5, [465.44, 139.5, 38.0, 17.1, 10.38, 5.75, 4.01, 3.11, 2.57, 2.01]],
   ])('two-sided CUSUM, k 0.5, h %d', (h, table) => {
-    SHIFTS.forEach((shift, i) => close(cusumRunLength(0.5, h, shift), table[i]!))
+    for (const [i, shift] of SHIFTS.entries()) close(cusumRunLength(0.5, h, shift), table[i]!)
   })
   it('one-sided CUSUM, k 0.5: 335.4 for h 4 and 930.9 for h 5', () => {
     close(oneSidedCusumRunLength(0.5, 4), 335.4, 0.001)
@@ -34,12 +34,11 @@ describe('average run lengths agree with published ones within 1 %', () => {
     [0.1, 2.814, [499.6, 106.3, 31.3, 10.3, 4.36, 2.87]],
     [0.05, 2.615, [499.9, 84.0, 28.8, 11.4, 5.22, 3.5]],
   ])('EWMA, λ %d, L %d, steady limits', (lambda, l, table) => {
-    ;[0, 0.25, 0.5, 1, 2, 3].forEach((shift, i) =>
-      close(ewmaRunLength(lambda, l, shift, { limits: 'steady' }), table[i]!),
-    )
+    for (const [i, shift] of [0, 0.25, 0.5, 1, 2, 3].entries())
+      close(ewmaRunLength(lambda, l, shift, { limits: 'steady' }), table[i]!)
   })
   it('Shewhart 3σ: 370.4 in control, 155.22, 43.89, 14.97, 6.30, 2.00 after shifts of 0.5 to 3σ', () => {
-    ;[370.4, 155.22, 43.89, 14.97, 6.3].forEach((arl, i) => close(shewhartRunLength(3, i / 2), arl, 0.001))
+    for (const [i, arl] of [370.4, 155.22, 43.89, 14.97, 6.3].entries()) close(shewhartRunLength(3, i / 2), arl, 0.001)
     close(shewhartRunLength(3, 3), 2.0, 0.001)
   })
 })
