@@ -67,6 +67,35 @@ export const readFolder = (folder: string): FolderReading => {
   return { files, faults }
 }
 
+/** Rules from elsewhere: a file, or the YAML files of a folder (a configuration folder's `rules`). */
+export const readRules = (place: string): FolderReading => {
+  const path = resolve(place)
+  const at = sayPath(path)
+  const isFolder = statSync(path, { throwIfNoEntry: false })?.isDirectory() === true
+  const folder = isFolder && existsSync(join(path, 'rules')) ? join(path, 'rules') : path
+  const listed = isFolder ? yamlPaths(folder) : ['']
+  if ('code' in listed) return { files: [], faults: [listed] }
+  const names = listed.filter((name) => !name.includes('/'))
+  if (names.length === 0)
+    return {
+      files: [],
+      faults: [{ code: 'no-rules', place: { at }, what: 'the folder holds no YAML file', remedy: 'name another one' }],
+    }
+  const read = names.map((name) => ({
+    name,
+    file: join(folder, name),
+    outcome: readOne(join(folder, name), sayPath(join(folder, name))),
+  }))
+  return {
+    files: read.flatMap(({ name, file, outcome }) =>
+      typeof outcome === 'string'
+        ? [{ kind: 'rules' as const, path: `rules/${name}`, at: sayPath(file), text: outcome }]
+        : [],
+    ),
+    faults: read.flatMap(({ outcome }) => (typeof outcome === 'string' ? [] : [outcome])),
+  }
+}
+
 /** A path as a person would type it here. */
 export const sayPath = (path: string): string => {
   const near = relative(process.cwd(), path)

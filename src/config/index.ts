@@ -1,5 +1,5 @@
 export { findConfigFolder } from './files.ts'
-export { type ConfigLoaded, type JudgeRule, loadConfig } from './load.ts'
+export { type ConfigLoaded, type JudgeRule, type LoadOptions, loadConfig } from './load.ts'
 export { isControl, ruleCovers, speciesOf, studyOf } from './lookups.ts'
 export { type Dimension, parseQuantity, type QuantityReading } from './quantity.ts'
 export { parseTime, type TimeReading } from './time.ts'

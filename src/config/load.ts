@@ -7,7 +7,7 @@ import { checkInstruments } from './checkInstruments.ts'
 import { checkRules } from './checkRules.ts'
 import { checkStudies } from './checkStudies.ts'
 import { checkRoom, checkSpecies, doubleNames } from './checks.ts'
-import { type ConfigFile, readFolder, sayPath } from './files.ts'
+import { type ConfigFile, type FolderReading, readFolder, readRules, sayPath } from './files.ts'
 import { byPlace } from './issues.ts'
 import { type FilePart, type Parts, parseFiles } from './parse.ts'
 import type { RoomFile } from './schemas/room.ts'
@@ -20,14 +20,23 @@ export type ConfigLoaded =
 /** What the room of rules finds wrong in a rule's expressions. */
 export type JudgeRule = (rule: RuleDefinition) => readonly Fault[]
 
+export interface LoadOptions {
+  /** A file or folder whose rules take the place of the folder's own. */
+  readonly rulesFrom?: string | null
+}
+
 /**
  * Reads a configuration folder whole: either everything is right and frozen, or every fault is named at its place. The
  * expressions of the rules are kept as text with their places; with `judgeRule`, what is wrong in them is told together
  * with everything else.
  */
-export const loadConfig = (folder: string, judgeRule: JudgeRule = () => []): ConfigLoaded => {
+export const loadConfig = (
+  folder: string,
+  judgeRule: JudgeRule = () => [],
+  { rulesFrom = null }: LoadOptions = {},
+): ConfigLoaded => {
   const root = resolve(folder)
-  const { files, faults: unread } = readFolder(root)
+  const { files, faults: unread } = rulesFrom === null ? readFolder(root) : withRulesFrom(rulesFrom, readFolder(root))
   const gone = unread.find(({ code }) => code === 'unreadable-folder')
   if (gone !== undefined) return { kind: 'refused', faults: [gone] }
   const parts = parseFiles(files)
@@ -35,6 +44,13 @@ export const loadConfig = (folder: string, judgeRule: JudgeRule = () => []): Con
   const faults = [...unread, ...parts.faults, ...checkAll(parts, root), ...rules.flatMap(judgeRule)].sort(byPlace)
   if (faults.length > 0 || parts.room === null) return { kind: 'refused', faults: faults as [Fault, ...Fault[]] }
   return { kind: 'loaded', config: deepFreeze({ ...build(parts, parts.room, files, root), rules }) }
+}
+
+/** The folder's own rules, and what is wrong in them, do not count. */
+const withRulesFrom = (place: string, own: FolderReading): FolderReading => {
+  const rules = readRules(place)
+  const elsewhere = own.files.filter(({ kind }) => kind !== 'rules')
+  return { files: [...elsewhere, ...rules.files], faults: [...own.faults, ...rules.faults] }
 }
 
 const checkAll = (parts: Parts, root: string): readonly Fault[] => [

@@ -1,5 +1,5 @@
-import { findConfigFolder, loadConfig, studyOf } from '../config/index.ts'
-import type { Config, Study } from '../config/types.ts'
+import { findConfigFolder, type LoadOptions, loadConfig, studyOf } from '../config/index.ts'
+import type { Config, RuleDefinition, Study } from '../config/types.ts'
 import { EXIT, type Fault, FaultError } from '../fault.ts'
 import { compileRule } from '../rules/index.ts'
 import type { CompiledRule } from '../rules/types.ts'
@@ -17,11 +17,12 @@ export type RoomLoaded =
   | { readonly kind: 'refused'; readonly faults: readonly [Fault, ...Fault[]] }
 
 /** Loads a configuration folder whole, or names every fault in it, those of the rules included. */
-export const loadRoom = (folder: string): RoomLoaded => {
-  const loaded = loadConfig(folder, (definition) => {
+export const loadRoom = (folder: string, options: LoadOptions = {}): RoomLoaded => {
+  const judgeRule = (definition: RuleDefinition) => {
     const compilation = compileRule(definition)
     return compilation.kind === 'refused' ? compilation.faults : []
-  })
+  }
+  const loaded = loadConfig(folder, judgeRule, options)
   if (loaded.kind === 'refused') return loaded
   const { config } = loaded
   const rules = config.rules.flatMap((definition) => {
@@ -32,8 +33,8 @@ export const loadRoom = (folder: string): RoomLoaded => {
 }
 
 /** For commands: the room of `--config`, or a FaultError with every fault (exit 78). */
-export const roomOf = (option: string | undefined): RoomInForce => {
-  const loaded = loadRoom(findConfigFolder(option))
+export const roomOf = (option: string | undefined, options: LoadOptions = {}): RoomInForce => {
+  const loaded = loadRoom(findConfigFolder(option), options)
   if (loaded.kind === 'refused') throw new FaultError(loaded.faults, EXIT.config)
   return loaded.room
 }
