@@ -13,7 +13,8 @@ export const occasionsOfRows = (rows: readonly WindowRow[], subject: Subject, st
     subject.study.replicatesWithinMs,
   )
 
-const curveOf = (id: number, { context }: Subject, store: Store): ((nm: number) => number | null) => {
+/** Absorbance of a stored spectrum at a wavelength as measured, nm; the curve is fetched when it is first asked for. */
+export const curveOf = (id: number, { context }: Subject, store: Store): ((nm: number) => number | null) => {
   let spectrum: Spectrum | null | undefined
   return (nm) => {
     if (spectrum === undefined) {
