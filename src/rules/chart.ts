@@ -52,7 +52,8 @@ const refused = (place: RuleDefinition['place'], code: string, what: string, rem
   faults: [{ code, place, what, remedy }],
 })
 
-const designOf = ({ chart, k, h, lambda, l, tests }: Condition): ChartDesign => {
+/** The chart that a rule draws. */
+export const designOf = ({ chart, k, h, lambda, l, tests }: Condition): ChartDesign => {
   switch (chart) {
     case 'shewhart':
       return { chart, l, tests: tests ?? [] }
