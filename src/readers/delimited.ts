@@ -5,13 +5,14 @@
 import type { Fault } from '../fault.ts'
 import { axisFault, gapWarnings } from './axis.ts'
 import { axisUnitOf, type Complaint, type Group, groupColumns, ordinatesOf } from './columns.ts'
+import { dialectsFor, readable, withoutDeclaration } from './dialects.ts'
 import { factsOf } from './facts.ts'
 import { type Surroundings, surroundingsOf } from './headings.ts'
 import { ordinateOfText } from './numbers.ts'
 import { sampleOfLabel } from './sample.ts'
 import { settleYaml } from './settle.ts'
-import { type Delimiter, type Dialect, type Table, tableUnder } from './table.ts'
-import { decodeText, type Line, linesOf } from './text.ts'
+import type { Delimiter, Table } from './table.ts'
+import { decodeText, linesOf } from './text.ts'
 import type { RawSpectrum, Reader, Reading, ReadingHints } from './types.ts'
 
 const FORMAT = 'delimited text'
@@ -107,48 +108,6 @@ const ambiguous = (attempts: readonly Extract<Attempt, { kind: 'spectra' }>[], f
     spectra: [],
   }
 }
-
-/** A first line such as `sep=;` names the delimiter and is no part of the table. */
-const withoutDeclaration = (
-  lines: readonly Line[],
-): { readonly lines: readonly Line[]; readonly declared: string | undefined } => {
-  const m = /^\s*"?(?:sep|delimiter)\s*=\s*(.|\\t|tab)"?\s*$/i.exec(lines[0]?.text ?? '')
-  return m ? { lines: lines.slice(1), declared: m[1] } : { lines, declared: undefined }
-}
-
-const WORDS: Readonly<Record<string, Delimiter>> = {
-  tab: '\t',
-  '\\t': '\t',
-  comma: ',',
-  semicolon: ';',
-  blank: ' ',
-  blanks: ' ',
-  space: ' ',
-  bar: '|',
-}
-
-const dialectsFor = (hints: ReadingHints, declared: string | undefined): readonly Dialect[] => {
-  const said = hints.delimiter ?? declared
-  const delimiters =
-    said === undefined ? ([';', '\t', ',', '|', ' '] as const) : [WORDS[said.toLowerCase()] ?? (said as Delimiter)]
-  return delimiters.flatMap((delimiter) =>
-    (['.', ','] as const).filter((d) => d === (hints.decimal ?? d)).map((decimal) => ({ delimiter, decimal })),
-  )
-}
-
-/** The tables that explain the most lines: a dialect that leaves rows of numbers over is not the file's. */
-const readable = (lines: readonly Line[], dialects: readonly Dialect[]): readonly Table[] => {
-  const tables = dialects
-    .filter(({ delimiter }) => occurs(delimiter, lines))
-    .map((dialect) => tableUnder(lines, dialect))
-    .filter((table) => table !== null && table.columns >= 2) as Table[]
-  const most = Math.max(0, ...tables.map((table) => table.rows.length))
-  return tables.filter((table) => table.rows.length === most)
-}
-
-/** A delimiter that stands nowhere makes no table of two columns. */
-const occurs = (delimiter: Delimiter, lines: readonly Line[]): boolean =>
-  lines.some(({ text }) => (delimiter === ' ' ? /\S[ \t]+\S/.test(text) : text.includes(delimiter)))
 
 const distinct = (attempts: readonly Extract<Attempt, { kind: 'spectra' }>[]): typeof attempts => {
   const seen = new Map<string, (typeof attempts)[number]>()
