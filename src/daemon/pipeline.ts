@@ -7,7 +7,7 @@ import type { RawSpectrum, Reading } from '../readers/types.ts'
 import type { StoredArrival } from '../store/arrivals.ts'
 import type { Store } from '../store/index.ts'
 import { type Subject, subjectOf } from './context.ts'
-import { type Kept, keep } from './keep.ts'
+import { isStorageFault, type Kept, keep } from './keep.ts'
 import type { Pool, WorkerFailure } from './pool.ts'
 import { recipeInForce, settleRecipe } from './recipe.ts'
 import type { RoomInForce } from './room.ts'
@@ -62,6 +62,8 @@ export const processPending = async (stations: Stations): Promise<number> => {
     const batch = stations.store.arrivals.pending(AT_ONCE)
     if (batch.length === 0) return done
     const readings = batch.map((arrival) => readArrival(arrival, stations))
+    // each is awaited in its turn below; until then a failure must not pass for one that nobody awaits
+    for (const reading of readings) reading.catch(() => undefined)
     let group: { inHand: ArrivalInHand; analyses: Promise<readonly (Analysed | null)[]> }[] = []
     const commitGroup = async (): Promise<void> => {
       const ready: { inHand: ArrivalInHand; analyses: readonly (Analysed | null)[] }[] = []
@@ -131,7 +133,19 @@ const analyseOne = async (
 const failedAnalysis = (raw: RawSpectrum, { why }: WorkerFailure): Analysis =>
   unprepared(raw, [{ code: 'worker', place: { at: 'fit' }, what: why, remedy: 'look at the spectrum by hand' }])
 
+/** A file never stops the daemon: whatever goes wrong with it, short of the disk, sets it aside with the reason. */
 const readArrival = async (arrival: StoredArrival, stations: Stations): Promise<ArrivalInHand> => {
+  try {
+    return await readWhole(arrival, stations)
+  } catch (error) {
+    if (isStorageFault(error)) throw error
+    stations.log.error({ err: error, arrival: arrival.id }, 'a file could not be read')
+    const reason = `it could not be read: ${error instanceof Error ? error.message : String(error)}`
+    return { kind: 'rejected', arrival, reason }
+  }
+}
+
+const readWhole = async (arrival: StoredArrival, stations: Stations): Promise<ArrivalInHand> => {
   const { store, pool } = stations
   const { config, studyOf } = stations.room()
   const same = store.arrivals.sameBefore(arrival)

@@ -1,6 +1,7 @@
 import { availableParallelism } from 'node:os'
 import { Piscina } from 'piscina'
 import type { Reading } from '../readers/types.ts'
+import { seats } from './seats.ts'
 import type { FitJob, FitResult, ReadJob } from './worker.ts'
 
 /** A job that ended without a result: it hung past its time, or its thread died. The pool goes on. */
@@ -22,30 +23,37 @@ const TIME_LIMIT_MS = 60_000
 const WORKER_MEMORY_MB = 512
 
 /** Reading and fitting happen in worker threads, so that nothing a file holds can stop the daemon. */
-export const startPool = (threads = Math.min(4, availableParallelism())): Pool => {
+export const startPool = ({
+  threads = Math.min(4, availableParallelism()),
+  timeLimitMs = TIME_LIMIT_MS,
+  worker = new URL('./worker.js', import.meta.url),
+} = {}): Pool => {
   const pool = new Piscina({
-    filename: new URL('./worker.js', import.meta.url).href,
+    filename: worker.href,
     minThreads: 1,
     maxThreads: threads,
     idleTimeout: 30_000,
     resourceLimits: { maxOldGenerationSizeMb: WORKER_MEMORY_MB },
   })
 
+  const seated = seats(threads)
+
   const run = async <Result>(name: 'read' | 'fit', job: ReadJob | FitJob): Promise<Result | WorkerFailure> => {
-    const limit = AbortSignal.timeout(TIME_LIMIT_MS)
+    // set when the job begins: what waits behind a file that hangs must not be condemned with it
+    const limit = AbortSignal.timeout(timeLimitMs)
     try {
       return (await pool.run(job, { name, signal: limit })) as Result
     } catch (error) {
       const why = limit.aborted
-        ? `took longer than ${TIME_LIMIT_MS / 1000} s and was stopped`
+        ? `took longer than ${timeLimitMs / 1000} s and was stopped`
         : `the worker failed: ${error instanceof Error ? error.message : String(error)}`
       return { kind: 'failed', why }
     }
   }
 
   return {
-    read: (job) => run<Reading>('read', job),
-    fit: (job) => run<FitResult>('fit', job),
+    read: (job) => seated(() => run<Reading>('read', job)),
+    fit: (job) => seated(() => run<FitResult>('fit', job)),
     stop: () => pool.destroy(),
   }
 }
