@@ -2,7 +2,7 @@
 
 import { NARROWEST_PER_CM, type Seed, WIDEST_PER_CM } from './seeds.ts'
 import type { Points } from './separable.ts'
-import { FOUR_LN2 } from './shapes.ts'
+import { FOUR_LN2, GAUSSIAN } from './shapes.ts'
 import type { BackgroundTerm, Recipe, RecipeComponent } from './types.ts'
 
 type Place = Pick<Seed, 'positionPerCm' | 'widthPerCm'>
@@ -40,7 +40,7 @@ const bandComponents = (places: readonly Place[], share: number): readonly Recip
     const below = k > 0 ? share * (p - sorted[k - 1]!.positionPerCm) : WANDER_PER_CM
     const above = k + 1 < sorted.length ? share * (sorted[k + 1]!.positionPerCm - p) : WANDER_PER_CM
     return {
-      shape: 'gaussian',
+      shape: GAUSSIAN,
       kind: 'band',
       positionPerCm: p,
       positionBoundsPerCm: [p - Math.min(WANDER_PER_CM, below), p + Math.min(WANDER_PER_CM, above)],
@@ -89,7 +89,7 @@ export const makeRecipe = (
   const edge = windowPerCm[1]
   const start = typeof flank === 'object' ? flank : { positionPerCm: edge + FLANK.start, widthPerCm: FLANK.width }
   const tail: RecipeComponent = {
-    shape: 'gaussian',
+    shape: GAUSSIAN,
     kind: 'flank',
     ...start,
     positionBoundsPerCm: [edge + FLANK.near, edge + FLANK.far],

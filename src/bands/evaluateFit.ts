@@ -1,4 +1,4 @@
-import { backgroundAt, bandAt, scatterOrigin, widthRatio } from './shapes.ts'
+import { backgroundAt, curveOf, scatterOrigin } from './shapes.ts'
 import type { BandFit } from './types.ts'
 
 export interface CurveParts {
@@ -13,12 +13,7 @@ export const evaluateFit = (fit: Extract<BandFit, { kind: 'fitted' }>, wavenumbe
   const { constant, scatter, scatterExponent } = fit.background
   const origin = scatterOrigin(fit.recipe)
   const background = wavenumberPerCm.map((x) => constant + scatter * backgroundAt(scatterExponent ?? 0, origin, x))
-  // both ascend in position, and bands never swap places
-  const skews = fit.recipe.components.map(({ skew }) => skew ?? 0)
-  const components = fit.components.map(({ positionPerCm, widthPerCm, height }, k) => {
-    const ratio = widthRatio(fit.recipe.components[k]!)
-    return wavenumberPerCm.map((x) => height * bandAt(skews[k]!, ((x - positionPerCm) / widthPerCm) * ratio))
-  })
+  const components = fit.components.map((component) => wavenumberPerCm.map(curveOf(component)))
   const total = background.map((b, i) => components.reduce((sum, part) => sum + part[i]!, b))
   return { total, components, background }
 }

@@ -2,7 +2,7 @@
 import type { Flag, Spectrum } from '../spectrum/types.ts'
 import { type CurveMaximum, curveMaximum } from './maxima.ts'
 import { disorder, joinNeighbours, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
-import { componentAt, widthRatio } from './shapes.ts'
+import { figuresOf } from './shapes.ts'
 import { ROUGH, type Solution, solveRecipe } from './solveRecipe.ts'
 import { rmsOf, standing } from './standing.ts'
 import type { BandFit, FitBands, FittedComponent, Recipe } from './types.ts'
@@ -123,25 +123,28 @@ const componentOf = (
   uncertainty: Uncertainty | null,
   k: number,
 ): FittedComponent => {
-  const { kind } = recipe.components[k]!
+  const { kind, shape } = recipe.components[k]!
   const edge = recipe.windowPerCm[1]
-  const shape = componentAt(kind, solution.parameters[2 * k]!, solution.parameters[2 * k + 1]!, edge)
+  const second = solution.parameters[2 * k + 1]!
+  const figures = figuresOf(recipe.components[k]!, solution.parameters[2 * k]!, second, edge)
   const isBand = kind === 'band'
-  const ratio = widthRatio(recipe.components[k]!)
   const uWidth = isBand && uncertainty ? root(uncertainty.ofParameter(2 * k + 1, 2 * k + 1)) : null
   return {
     kind,
-    positionPerCm: shape.positionPerCm,
+    positionPerCm: figures.positionPerCm,
     uPositionPerCm: uncertainty && root(positionCovariance(recipe, solution, uncertainty, k, k)),
     uModelPerCm: null,
     maximumPerCm: null,
     uMaximumPerCm: null,
-    widthPerCm: shape.widthPerCm * ratio,
-    uWidthPerCm: uWidth === null ? null : uWidth * ratio,
-    height: solution.at.coefficients[k]! * shape.heightRatio,
-    uHeight: isBand && uncertainty ? root(uncertainty.ofCoefficient(k)) : null,
+    widthPerCm: figures.widthPerCm,
+    uWidthPerCm: uWidth === null ? null : uWidth * figures.widthSlope,
+    shape,
+    height: solution.at.coefficients[k]! * figures.heightRatio,
+    uHeight: isBand && uncertainty ? scaled(root(uncertainty.ofCoefficient(k)), figures.heightRatio) : null,
   }
 }
+
+const scaled = (u: number | null, by: number): number | null => (u === null ? null : u * by)
 
 /** One maximum belongs to one component only: the nearest. */
 const curveMaxima = (points: Selection, components: readonly FittedComponent[]): readonly (CurveMaximum | null)[] => {

@@ -8,7 +8,7 @@
  * Methods for Non-Linear Least Squares Problems, 2004, §3.2). Stops are those of Moré (1978): the cosine
  * between residuals and tangent space, the relative change of F, the relative step.
  */
-import { cholesky, solve, submatrix } from './symmetric.ts'
+import { cholesky, gathered, solve, submatrix } from './symmetric.ts'
 
 /** F, Jᵀr and JᵀJ (row-major) at a point. */
 export interface Quadratic {
@@ -70,24 +70,23 @@ const boundedStep = (
   at: Quadratic,
   free: readonly number[],
   { lower, upper }: Box,
-  damping: Float64Array,
+  diagonal: Float64Array,
+  lambda: number,
 ): Float64Array | null => {
   const n = p.length
   // A column without influence (a band of height zero) has no step.
   const moving = free.filter((i) => at.hessian[i * n + i]! > 0)
   const m = moving.length
   const damped = submatrix(at.hessian, n, moving)
-  for (let i = 0; i < m; i++) damped[i * m + i]! += damping[moving[i]!]!
+  for (let i = 0; i < m; i++) damped[i * m + i]! += lambda * diagonal[moving[i]!]!
   const factor = cholesky(damped, m)
   if (!factor) return null
-  const partial = solve(
-    factor,
-    Float64Array.from(moving, (i) => -at.gradient[i]!),
-  )
+  const partial = solve(factor, gathered(at.gradient, moving))
   const step = new Float64Array(n)
-  moving.forEach((i, k) => {
-    step[i] = Math.min(upper[i]!, Math.max(lower[i]!, p[i]! + partial[k]!)) - p[i]!
-  })
+  for (let k = 0; k < m; k++) {
+    const i = moving[k]!
+    step[i] = Math.min(upper[i]!, Math.max(lower[i]!, p[i]! - partial[k]!)) - p[i]!
+  }
   return step
 }
 
@@ -130,20 +129,15 @@ export const minimise = <Q extends Quadratic>(
     if (largestCosine(at, free) <= tolerances.gradient)
       return { parameters: p, at, iterations: iteration, stopped: 'gradient' }
     for (let i = 0; i < n; i++) diagonal[i] = Math.max(diagonal[i]!, at.hessian[i * n + i]!)
-    const step = boundedStep(
-      p,
-      at,
-      free,
-      box,
-      diagonal.map((d) => d * lambda),
-    )
+    const step = boundedStep(p, at, free, box, diagonal, lambda)
     if (step) {
       if (isTiny(step, p, tolerances.step)) return { parameters: p, at, iterations: iteration, stopped: 'step' }
       const predicted = predictedReduction(at, step)
       // An undamped step that promises no more than this need not be tried.
       if (lambda < 1e-2 && predicted >= 0 && predicted <= tolerances.relativeChange * at.cost)
         return { parameters: p, at, iterations: iteration, stopped: 'relative change' }
-      const trialPoint = p.map((v, i) => v + step[i]!)
+      const trialPoint = new Float64Array(n)
+      for (let i = 0; i < n; i++) trialPoint[i] = p[i]! + step[i]!
       const trial: Q | null = predicted > 0 ? objective(trialPoint) : null
       const gained: number = trial ? at.cost - trial.cost : -1
       const within = (share: number) => Math.abs(gained) <= share * at!.cost && predicted <= share * at!.cost

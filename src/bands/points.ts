@@ -69,31 +69,40 @@ const weightedSpread = (y: Float64Array, noise: Float64Array): number => {
   return w > 0 ? Math.sqrt(square / w) : 0
 }
 
-/** Neighbours joined, weighted by their noise, to at most `most` points: bands are broad, a first look needs no more. */
+/** Neighbours joined, weighted by their noise, to about `most` points at most: bands are broad, a first look needs no more. */
 export const joinNeighbours = (points: Selection, misfit: number, most: number): Selection => {
-  const group = Math.ceil(points.x.length / most)
-  if (group <= 1) return points
-  const count = Math.ceil(points.x.length / group)
-  const x = new Float64Array(count)
-  const y = new Float64Array(count)
-  const noise = new Float64Array(count)
-  for (let k = 0; k < count; k++) {
-    let w = 0
-    for (let i = k * group; i < Math.min((k + 1) * group, points.x.length); i++) {
-      const wi = 1 / points.noise[i]! ** 2
-      w += wi
-      x[k]! += wi * points.x[i]!
-      y[k]! += wi * points.y[i]!
-    }
-    x[k]! /= w
-    y[k]! /= w
-    noise[k] = 1 / Math.sqrt(w)
-  }
-  return weigh(x, y, noise, misfit)
+  const count = points.x.length
+  if (count <= most) return points
+  const byNoise = { x: points.x, y: points.y, weight: points.noise.map((s) => 1 / s) }
+  const { x, y, weight } = joined(byNoise, (points.x[count - 1]! - points.x[0]!) / most)
+  return weigh(
+    x,
+    y,
+    weight.map((w) => 1 / w),
+    misfit,
+  )
 }
 
-/** Every `step`-th point, for the first iterations. */
-export const thin = ({ x, y, weight }: Points, step: number): Points => {
-  const pick = (a: Float64Array) => a.filter((_, i) => i % step === 0)
-  return { x: pick(x), y: pick(y), weight: pick(weight) }
+/** Means of neighbours within `spanPerCm`, weighted by 1/σ². */
+export const joined = ({ x, y, weight }: Points, spanPerCm: number): Points => {
+  const most = Math.min(x.length, Math.ceil((x[x.length - 1]! - x[0]!) / spanPerCm) + 1)
+  const [xs, ys, weights] = [new Float64Array(most), new Float64Array(most), new Float64Array(most)]
+  let count = 0
+  for (let from = 0; from < x.length; count++) {
+    const end = x[from]! + spanPerCm
+    let [w, wx, wy] = [0, 0, 0]
+    let i = from
+    do {
+      const one = weight[i]! * weight[i]!
+      w += one
+      wx += one * x[i]!
+      wy += one * y[i]!
+      i++
+    } while (i < x.length && x[i]! < end)
+    xs[count] = wx / w
+    ys[count] = wy / w
+    weights[count] = Math.sqrt(w)
+    from = i
+  }
+  return { x: xs.subarray(0, count), y: ys.subarray(0, count), weight: weights.subarray(0, count) }
 }

@@ -30,9 +30,9 @@ const skewedRivals = (best: Found, points: readonly Selection[]): readonly Found
 
 const withSkew = (recipe: Recipe, k: number, skew: number): Recipe => {
   const components = recipe.components.map((component, i) =>
-    i === k ? { ...component, shape: 'skewed' as const, skew } : component,
+    i === k ? { ...component, shape: { kind: 'skewed' as const, skew } } : component,
   )
-  const skewed = components.filter(({ shape }) => shape === 'skewed').length
+  const skewed = components.filter(({ shape }) => shape.kind === 'skewed').length
   const name = recipe.name.replace(/^\d+ gaussian( \+ \d+ skewed)?/, (_all) => {
     const bands = components.filter(({ kind }) => kind === 'band').length
     return `${bands - skewed} gaussian + ${skewed} skewed`

@@ -2,7 +2,7 @@
 import { BACKGROUNDS, makeRecipe, OTHER_BACKGROUNDS } from './candidates.ts'
 import type { Selection } from './points.ts'
 import { apart, findSeeds, NARROWEST_PER_CM, type Seed, WIDEST_PER_CM } from './seeds.ts'
-import { componentAt } from './shapes.ts'
+import { figuresOf } from './shapes.ts'
 import { ROUGH, type Solution, solveRecipe } from './solveRecipe.ts'
 import type { BackgroundTerm, BandHint, Recipe } from './types.ts'
 
@@ -66,12 +66,15 @@ export const bandCount = ({ components }: Recipe): number => components.filter((
 const mean = (values: readonly number[]): number => values.reduce((sum, v) => sum + v, 0) / values.length
 
 const placeOf = ({ recipe, solutions }: Pick<Found, 'recipe' | 'solutions'>, k: number): Place => {
-  const shapes = solutions.map(({ parameters }) =>
-    componentAt(recipe.components[k]!.kind, parameters[2 * k]!, parameters[2 * k + 1]!, recipe.windowPerCm[1]),
-  )
+  const { kind } = recipe.components[k]!
+  const found = solutions.map(({ parameters }) => {
+    const [first, second] = [parameters[2 * k]!, parameters[2 * k + 1]!]
+    if (kind === 'band') return { positionPerCm: first, widthPerCm: second }
+    return figuresOf(recipe.components[k]!, first, second, recipe.windowPerCm[1])
+  })
   return {
-    positionPerCm: mean(shapes.map((shape) => shape.positionPerCm)),
-    widthPerCm: mean(shapes.map((shape) => shape.widthPerCm)),
+    positionPerCm: mean(found.map(({ positionPerCm }) => positionPerCm)),
+    widthPerCm: mean(found.map(({ widthPerCm }) => widthPerCm)),
   }
 }
 
@@ -108,8 +111,8 @@ export const started = (trial: Found, bounds: 'search' | 'locked' = 'search'): R
   const tail = flank < 0 ? false : placeOf(trial, flank)
   const recipe = makeRecipe(bandPlaces(trial), tail, trial.recipe.background, trial.recipe.windowPerCm, bounds)
   const components = recipe.components.map((component, k) => {
-    const { shape, skew } = trial.recipe.components[k]!
-    return skew === undefined ? component : { ...component, shape, skew }
+    const { shape } = trial.recipe.components[k]!
+    return { ...component, shape }
   })
   return { ...recipe, name: trial.recipe.name, components }
 }

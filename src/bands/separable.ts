@@ -8,9 +8,11 @@
  * so one pass over the data that collects dot products of the columns serves heights, gradient and step.
  * H⁻¹ is at the same time the marginal covariance of α in the full problem.
  */
+import { fillColumns } from './columns.ts'
+import { gramBlock, type Triple } from './gram.ts'
 import type { Quadratic } from './levenbergMarquardt.ts'
-import { backgroundAt, backgroundExponents, fillColumns, fillSkewed, scatterOrigin } from './shapes.ts'
-import { cholesky, forward, solve, submatrix } from './symmetric.ts'
+import { backgroundAt, backgroundExponents, scatterOrigin } from './shapes.ts'
+import { type Cholesky, cholesky, forward, gathered, solve, submatrix } from './symmetric.ts'
 import type { Recipe } from './types.ts'
 
 /** Points that enter a fit; `weight` is 1/σ. */
@@ -33,50 +35,19 @@ export interface Separated extends Quadratic {
   readonly residuals: Float64Array
 }
 
-const dot = (a: Float64Array, b: Float64Array): number => {
-  let sum = 0
-  for (let i = 0; i < a.length; i++) sum += a[i]! * b[i]!
-  return sum
-}
-
-/** Dot products of one column with others, four at a time: reading the columns is what takes the time. */
-const products = (a: Float64Array, others: readonly Float64Array[]): Float64Array => {
-  const result = new Float64Array(others.length)
-  const count = a.length
-  let k = 0
-  for (; k + 4 <= others.length; k += 4) {
-    const [b, c, d, e] = [others[k]!, others[k + 1]!, others[k + 2]!, others[k + 3]!]
-    let s0 = 0
-    let s1 = 0
-    let s2 = 0
-    let s3 = 0
-    for (let i = 0; i < count; i++) {
-      const v = a[i]!
-      s0 += v * b[i]!
-      s1 += v * c[i]!
-      s2 += v * d[i]!
-      s3 += v * e[i]!
-    }
-    result[k] = s0
-    result[k + 1] = s1
-    result[k + 2] = s2
-    result[k + 3] = s3
-  }
-  for (; k < others.length; k++) result[k] = dot(a, others[k]!)
-  return result
+interface Linear {
+  readonly coefficients: Float64Array
+  readonly active: readonly number[]
+  /** Of the Gram matrix over what is active. */
+  readonly factor: Cholesky
 }
 
 /** Least squares with some coefficients ≥ 0 (Lawson & Hanson 1974, ch. 23, by dropping from the full set and letting back in). */
-const nonNegative = (
-  gram: Float64Array,
-  right: Float64Array,
-  signed: readonly boolean[],
-): { readonly coefficients: Float64Array; readonly active: readonly number[] } | null => {
+const nonNegative = (gram: Float64Array, right: Float64Array, signed: readonly boolean[]): Linear | null => {
   const m = right.length
-  let active = Array.from({ length: m }, (_, i) => i).filter((i) => gram[i * m + i]! > 0)
-  const coefficients = new Float64Array(m)
+  let active: readonly number[] = indicesWhere(m, (i) => gram[i * m + i]! > 0)
   for (let round = 0; round < 3 * m; round++) {
-    const factor = cholesky(submatrix(gram, m, active), active.length)
+    const factor = cholesky(active.length === m ? gram : submatrix(gram, m, active), active.length)
     if (!factor) {
       // Two columns tell the same: let go of the last one that may be zero.
       const last = active.findLast((i) => !signed[i]) ?? active.at(-1)
@@ -84,102 +55,146 @@ const nonNegative = (
       active = active.filter((i) => i !== last)
       continue
     }
-    const solution = solve(
-      factor,
-      Float64Array.from(active, (i) => right[i]!),
-    )
-    const worst = active.reduce((w, i, k) => (!signed[i] && solution[k]! < (w < 0 ? 0 : solution[w]!) ? k : w), -1)
-    if (worst >= 0) {
-      active = active.filter((_, k) => k !== worst)
+    const solution = solve(factor, gathered(right, active))
+    const worst = mostNegative(solution, active, signed)
+    if (worst !== null) {
+      active = active.filter((i) => i !== worst)
       continue
     }
-    coefficients.fill(0)
-    active.forEach((i, k) => {
-      coefficients[i] = solution[k]!
-    })
-    const held = Array.from({ length: m }, (_, i) => i).filter((i) => !active.includes(i) && gram[i * m + i]! > 0)
-    const pull = (i: number) => {
-      let sum = right[i]!
-      for (let j = 0; j < m; j++) sum -= gram[i * m + j]! * coefficients[j]!
-      return sum / Math.sqrt(gram[i * m + i]!)
-    }
-    const back = held.find((i) => pull(i) > 1e-9 * Math.abs(right[i]! / Math.sqrt(gram[i * m + i]!)))
-    if (back === undefined || round > m) return { coefficients, active }
+    const coefficients = new Float64Array(m)
+    for (let k = 0; k < active.length; k++) coefficients[active[k]!] = solution[k]!
+    const back = round > m ? null : letBack(gram, right, coefficients, active)
+    if (back === null) return { coefficients, active, factor }
     active = [...active, back].sort((a, b) => a - b)
   }
-  return { coefficients, active }
+  return null
 }
 
-/** The objective of a recipe on points, to be minimised over `searchSpace(recipe)`. */
+const indicesWhere = (count: number, holds: (i: number) => boolean): readonly number[] => {
+  const indices: number[] = []
+  for (let i = 0; i < count; i++) if (holds(i)) indices.push(i)
+  return indices
+}
+
+/** The coefficient farthest below zero of those that must not be. */
+const mostNegative = (solution: Float64Array, active: readonly number[], signed: readonly boolean[]): number | null => {
+  let worst: number | null = null
+  let least = 0
+  for (let k = 0; k < active.length; k++) {
+    if (signed[active[k]!] || solution[k]! >= least) continue
+    least = solution[k]!
+    worst = active[k]!
+  }
+  return worst
+}
+
+/** A coefficient held at zero that would lower the sum of squares by rising. */
+const letBack = (
+  gram: Float64Array,
+  right: Float64Array,
+  coefficients: Float64Array,
+  active: readonly number[],
+): number | null => {
+  const m = right.length
+  for (let i = 0; i < m && active.length < m; i++) {
+    if (active.includes(i) || !(gram[i * m + i]! > 0)) continue
+    let pull = right[i]!
+    for (let j = 0; j < m; j++) pull -= gram[i * m + j]! * coefficients[j]!
+    if (pull > 1e-9 * Math.abs(right[i]!)) return i
+  }
+  return null
+}
+
+/** The objective of a recipe on points, to be minimised over `searchSpace(recipe)`. Its columns are written anew by each call. */
 export const separable = (recipe: Recipe, { x, y, weight }: Points): ((alpha: Float64Array) => Separated | null) => {
   const { components } = recipe
   const exponents = backgroundExponents(recipe)
   const count = x.length
-  const nBands = components.length
-  const m = nBands + exponents.length
-  const n = 2 * nBands
+  const bands = components.length
+  const m = bands + exponents.length
+  const n = 2 * bands
   const edge = recipe.windowPerCm[1]
   const origin = scatterOrigin(recipe)
   const column = () => new Float64Array(count)
-  const target = y.map((v, i) => v * weight[i]!)
-  const phi = Array.from({ length: m }, column)
-  const slopes = Array.from({ length: n }, column)
-  exponents.forEach((exponent, k) => {
-    const fixed = phi[nBands + k]!
-    for (let i = 0; i < count; i++) fixed[i] = backgroundAt(exponent, origin, x[i]!) * weight[i]!
+  const target = column()
+  for (let i = 0; i < count; i++) target[i] = y[i]! * weight[i]!
+  const groups: readonly Triple[] = components.map(() => [column(), column(), column()])
+  const fixed = exponents.map((exponent) => {
+    const background = column()
+    for (let i = 0; i < count; i++) background[i] = backgroundAt(exponent, origin, x[i]!) * weight[i]!
+    return background
   })
-  const signed = Array.from({ length: m }, (_, i) => i >= nBands && exponents[i - nBands] === 0)
+  const linearColumns = inTriples([...groups.map(([value]) => value), ...fixed], column)
+  const rest = inTriples([...fixed, target], column)
+  // products of all columns: of each component its value and two slopes, then the background, then the measured values
+  const size = 3 * (groups.length + rest.length)
+  const products = new Float64Array(size * size)
+  rest.forEach((a, i) => {
+    rest.slice(0, i + 1).forEach((b, j) => gramBlock(a, b, products, size, 3 * (bands + i), 3 * (bands + j)))
+  })
+  const places = Array.from({ length: m }, (_, i) => (i < bands ? 3 * i : 3 * bands + i - bands))
+  const slopes = Array.from({ length: n }, (_, a) => 3 * (a >> 1) + 1 + (a & 1))
+  const measured = 3 * bands + exponents.length
+  const signed = places.map((_, i) => i >= bands && exponents[i - bands] === 0)
+  const pick = (rows: readonly number[], columns: readonly number[]) => {
+    const picked = new Float64Array(rows.length * columns.length)
+    let at = 0
+    for (const row of rows) for (const k of columns) picked[at++] = products[row * size + k]!
+    return picked
+  }
 
   return (alpha) => {
-    components.forEach(({ kind, skew }, k) => {
-      if (skew) {
-        fillSkewed(skew, alpha[2 * k]!, alpha[2 * k + 1]!, x, weight, phi[k]!, slopes[2 * k]!, slopes[2 * k + 1]!)
-        return
-      }
-      fillColumns(kind, alpha[2 * k]!, alpha[2 * k + 1]!, edge, x, weight, phi[k]!, slopes[2 * k]!, slopes[2 * k + 1]!)
-    })
-    const phiPhi = new Float64Array(m * m)
-    const right = new Float64Array(m)
-    for (let i = 0; i < m; i++) {
-      const row = products(phi[i]!, [target, ...phi.slice(0, i + 1)])
-      right[i] = row[0]!
-      for (let j = 0; j <= i; j++) phiPhi[i * m + j] = phiPhi[j * m + i] = row[j + 1]!
+    for (let k = 0; k < bands; k++) {
+      const [value, byFirst, bySecond] = groups[k]!
+      fillColumns(components[k]!, alpha[2 * k]!, alpha[2 * k + 1]!, edge, x, weight, { value, byFirst, bySecond })
+      for (let l = 0; l <= k; l++) gramBlock(groups[k]!, groups[l]!, products, size, 3 * k, 3 * l)
+      for (let l = 0; l < rest.length; l++) gramBlock(groups[k]!, rest[l]!, products, size, 3 * k, 3 * (bands + l))
     }
-    const linear = nonNegative(phiPhi, right, signed)
+    const phiPhi = pick(places, places)
+    const linear = nonNegative(phiPhi, pick(places, [measured]), signed)
     if (!linear) return null
-    const { coefficients, active } = linear
+    const { coefficients, active, factor } = linear
     const residuals = target.slice()
-    for (const i of active) {
-      const c = coefficients[i]!
-      const f = phi[i]!
-      for (let k = 0; k < count; k++) residuals[k] = residuals[k]! - c * f[k]!
-    }
-    const cost = dot(residuals, residuals) / 2
-    const phiD = new Float64Array(m * n)
-    const dD = new Float64Array(n * n)
+    for (let k = 0; k < linearColumns.length; k++) takeAway(residuals, linearColumns[k]!, coefficients, 3 * k)
+    let cost = 0
+    for (let i = 0; i < count; i++) cost += residuals[i]! * residuals[i]!
+    if (!Number.isFinite(cost)) return null
+    const phiD = pick(places, slopes)
+    const dD = pick(slopes, slopes)
     const gradient = new Float64Array(n)
+    const hessian = new Float64Array(n * n)
+    const halves: Float64Array[] = []
     for (let a = 0; a < n; a++) {
       const c = coefficients[a >> 1]!
-      if (c === 0) continue
-      const row = products(slopes[a]!, [residuals, ...phi, ...slopes.slice(0, a + 1)])
-      gradient[a] = -c * row[0]!
-      for (let i = 0; i < m; i++) phiD[i * n + a] = row[i + 1]!
-      for (let b = 0; b <= a; b++) if (coefficients[b >> 1]! !== 0) dD[a * n + b] = dD[b * n + a] = row[m + 1 + b]!
-    }
-    const factor = cholesky(submatrix(phiPhi, m, active), active.length)
-    if (!factor || !Number.isFinite(cost)) return null
-    const halves = Array.from({ length: n }, (_, a) =>
-      forward(
-        factor,
-        Float64Array.from(active, (i) => phiD[i * n + a]!),
-      ),
-    )
-    const hessian = new Float64Array(n * n)
-    for (let a = 0; a < n; a++)
-      for (let b = 0; b <= a; b++) {
-        const schur = dD[a * n + b]! - dot(halves[a]!, halves[b]!)
-        hessian[a * n + b] = hessian[b * n + a] = coefficients[a >> 1]! * coefficients[b >> 1]! * schur
+      const crossed = new Float64Array(active.length)
+      let pull = products[slopes[a]! * size + measured]!
+      for (let k = 0; k < active.length; k++) {
+        crossed[k] = phiD[active[k]! * n + a]!
+        pull -= coefficients[active[k]!]! * crossed[k]!
       }
-    return { cost, gradient, hessian, coefficients, active, phiPhi, phiD, dD, residuals }
+      gradient[a] = -c * pull
+      halves.push(forward(factor, crossed))
+      for (let b = 0; b <= a; b++) {
+        let schur = dD[a * n + b]!
+        for (let k = 0; k < active.length; k++) schur -= halves[a]![k]! * halves[b]![k]!
+        hessian[a * n + b] = hessian[b * n + a] = c * coefficients[b >> 1]! * schur
+      }
+    }
+    return { cost: cost / 2, gradient, hessian, coefficients, active, phiPhi, phiD, dD, residuals }
   }
+}
+
+/** Filled up with empty columns. */
+const inTriples = (columns: readonly Float64Array[], empty: () => Float64Array): readonly Triple[] =>
+  Array.from({ length: Math.ceil(columns.length / 3) }, (_, k) => [
+    columns[3 * k]!,
+    columns[3 * k + 1] ?? empty(),
+    columns[3 * k + 2] ?? empty(),
+  ])
+
+const takeAway = (from: Float64Array, [a, b, c]: Triple, coefficients: Float64Array, at: number): void => {
+  const p = coefficients[at]!
+  const q = coefficients[at + 1] ?? 0
+  const r = coefficients[at + 2] ?? 0
+  for (let i = 0; i < from.length; i++) from[i] = from[i]! - p * a[i]! - q * b[i]! - r * c[i]!
 }

@@ -1,6 +1,6 @@
-/** A recipe solved on points: first on every fourth point, where most of the way is gone, then on all. */
+/** A recipe solved on points: first on few, neighbours joined, where most of the way is gone; then on all. */
 import { type Minimum, minimise, type Tolerances } from './levenbergMarquardt.ts'
-import { thin } from './points.ts'
+import { joined } from './points.ts'
 import { type Points, type Separated, separable } from './separable.ts'
 import { searchSpace } from './shapes.ts'
 import type { Recipe } from './types.ts'
@@ -16,8 +16,10 @@ export const ROUGH: Tolerances = { relativeChange: 1e-5, gradient: 1e-5, step: 1
 const FINAL: Tolerances = { relativeChange: 1e-9, gradient: 1e-9, step: 1e-9, iterations: 100 }
 /** λ after the approach. */
 const NEARLY_THERE = 1e-6
-const THINNED_FROM = 240
-const THINNING = 4
+/** The approach joins neighbours within this share of the narrowest width that a component starts from. */
+const SPAN = 1 / 12
+/** Less than this is not worth an approach. */
+const FEWER_BY = 1.5
 
 /** Null where the model can't be evaluated at all. */
 export const solveRecipe = (recipe: Recipe, points: Points, tolerances: Tolerances = FINAL): Solution | null => {
@@ -25,8 +27,10 @@ export const solveRecipe = (recipe: Recipe, points: Points, tolerances: Toleranc
   let from = space.start
   let iterations = 0
   let settings: Tolerances = tolerances
-  if (points.x.length >= THINNED_FROM) {
-    const approach = minimise(separable(recipe, thin(points, THINNING)), from, space.box, APPROACH)
+  const narrowest = recipe.components.reduce((least, { widthPerCm }) => Math.min(least, widthPerCm), Infinity)
+  const few = joined(points, SPAN * narrowest)
+  if (few.x.length * FEWER_BY < points.x.length) {
+    const approach = minimise(separable(recipe, few), from, space.box, APPROACH)
     if (approach) {
       from = approach.parameters
       iterations = approach.iterations

@@ -70,10 +70,20 @@ export const inverse = (factor: Cholesky): Float64Array => {
   return result
 }
 
+/** The entries `keep` of a vector. */
+export const gathered = (values: Float64Array, keep: readonly number[]): Float64Array => {
+  const result = new Float64Array(keep.length)
+  for (let i = 0; i < keep.length; i++) result[i] = values[keep[i]!]!
+  return result
+}
+
 /** The rows and columns `keep` of an n × n matrix. */
 export const submatrix = (a: Float64Array, n: number, keep: readonly number[]): Float64Array => {
   const m = keep.length
   const result = new Float64Array(m * m)
-  for (let i = 0; i < m; i++) for (let j = 0; j < m; j++) result[i * m + j] = a[keep[i]! * n + keep[j]!]!
+  for (let i = 0; i < m; i++) {
+    const row = keep[i]! * n
+    for (let j = 0; j < m; j++) result[i * m + j] = a[row + keep[j]!]!
+  }
   return result
 }

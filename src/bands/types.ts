@@ -19,11 +19,18 @@ export interface Recipe {
   readonly misfit?: number
 }
 
+/** Shapes of a band, see shapes.ts. What they hold besides position and width is part of the recipe and not fitted. */
+export type BandShape =
+  | { readonly kind: 'gaussian' }
+  /** Log-normal; asymmetry b, positive: the blue wing is the longer. */
+  | { readonly kind: 'skewed'; readonly skew: number }
+  /** Share of the Lorentzian part, 0 to 1. */
+  | { readonly kind: 'pseudo-voigt'; readonly lorentz: number }
+  /** Vibrational lines `quantumPerCm` apart with Poisson's weights about the mean number `huangRhys`. */
+  | { readonly kind: 'progression'; readonly quantumPerCm: number; readonly huangRhys: number }
+
 export interface RecipeComponent {
-  /** `skewed`: log-normal, see shapes.ts. */
-  readonly shape: 'gaussian' | 'skewed'
-  /** Asymmetry b of a skewed band, held; positive: the blue wing is the longer. */
-  readonly skew?: number
+  readonly shape: BandShape
   /** `band`: a d–d band; `flank`: a charge-transfer band whose centre may lie beyond the window. */
   readonly kind: 'band' | 'flank'
   /** Where the search starts and how far it may go. cm⁻¹ */
@@ -69,8 +76,10 @@ export interface FittedComponent {
   /** Maximum of the measured curve near the component; null where the curve has none. */
   readonly maximumPerCm: number | null
   readonly uMaximumPerCm: number | null
+  /** Full width at half maximum of the whole component. */
   readonly widthPerCm: number
   readonly uWidthPerCm: number | null
+  readonly shape: BandShape
   readonly height: number
   readonly uHeight: number | null
 }

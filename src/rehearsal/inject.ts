@@ -3,7 +3,7 @@
  * it, and a converted part x, absorbance becomes A + x Σ (b_product − b), the product taken to absorb as strongly as the
  * compound and as broadly. Noise, scatter and flanks stay those of the measurement; ordinates keep the file's own step.
  */
-import { bandAt, widthRatio } from '../bands/shapes.ts'
+import { curveOf } from '../bands/shapes.ts'
 import type { Recipe } from '../bands/types.ts'
 import type { OrdinateKind, RawSpectrum } from '../readers/types.ts'
 import { readingStep } from '../spectrum/noise.ts'
@@ -69,8 +69,8 @@ export const withProduct = (
   return { ...raw, y: changed }
 }
 
-const heightAt = ({ component, widthPerCm, height }: MovedBand, centre: number, perCm: number): number =>
-  height * bandAt(component.skew ?? 0, ((perCm - centre) / widthPerCm) * widthRatio(component))
+const heightAt = (band: MovedBand, positionPerCm: number, perCm: number): number =>
+  curveOf({ ...band, shape: band.component.shape, positionPerCm })(perCm)
 
 /** How more absorbance (or Kubelka–Munk function) shows in an ordinate of this kind. */
 const addingTo = (kind: OrdinateKind): ((value: number, more: number) => number) => {

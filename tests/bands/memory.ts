@@ -8,7 +8,7 @@ const recipe: Recipe = {
   name: '1 gaussian + constant',
   components: [
     {
-      shape: 'gaussian',
+      shape: { kind: 'gaussian' },
       kind: 'band',
       positionPerCm: 17000,
       positionBoundsPerCm: [14500, 19500],

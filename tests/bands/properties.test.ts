@@ -8,7 +8,7 @@ import { gaussianNoise, generator, simulate } from './simulated.ts'
 const recipe: Recipe = {
   name: '2 gaussian + constant',
   components: [17000, 25000].map((positionPerCm) => ({
-    shape: 'gaussian',
+    shape: { kind: 'gaussian' },
     kind: 'band',
     positionPerCm,
     positionBoundsPerCm: [positionPerCm - 2500, positionPerCm + 2500],

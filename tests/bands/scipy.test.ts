@@ -50,7 +50,7 @@ describe.skipIf(python === null)(`the same minimum as SciPy's curve_fit${title}`
       const recipe: Recipe = {
         name: '2 gaussian + constant + scatter',
         components: bands.map(([p]) => ({
-          shape: 'gaussian',
+          shape: { kind: 'gaussian' },
           kind: 'band',
           positionPerCm: p + 300,
           positionBoundsPerCm: [p - 2500, p + 2500],

@@ -50,7 +50,7 @@ const simulate = (points) => {
 const recipeFor = (x) => ({
   name: '3 gaussian + constant + scatter',
   components: [0, 1, 2].map((k) => ({
-    shape: 'gaussian',
+    shape: { kind: 'gaussian' },
     kind: 'band',
     positionPerCm: STARTS[2 * k],
     positionBoundsPerCm: [STARTS[2 * k] - 2500, STARTS[2 * k] + 2500],
