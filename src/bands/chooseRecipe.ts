@@ -35,6 +35,7 @@ import {
   type Tail,
 } from './search.ts'
 import { subsets } from './seeds.ts'
+import { FIRST_LOOK, ROUGH } from './solveRecipe.ts'
 import type { BandHint, ChooseRecipe, Recipe, RecipeChoice } from './types.ts'
 
 const JOINED = 240
@@ -92,6 +93,7 @@ const choose = (
   const first = searching(
     joined.map((selection) => reweigh(selection, FIRST_MISFIT)),
     windowPerCm,
+    FIRST_LOOK,
   )
   const empty = BACKGROUNDS.flatMap((background) => tails.slice(0, 2).map((tail) => first([], tail, background)))
   const sets = subsets(seeds.slice(0, MOST_SEEDS), hints.length, bands)
@@ -104,8 +106,8 @@ const choose = (
   // the closest of all, sensible or not, tells how far the spectra are from any sum of bands
   const misfit = findMisfit(started(found.reduce(closer)), joined)
   const points = joined.map((selection) => reweigh(selection, misfit))
-  const attempt = searching(points, windowPerCm)
-  const refined = leaders(found).flatMap((trial) => everyBackground(bandPlaces(trial), attempt, tails))
+  const attempt = searching(points, windowPerCm, ROUGH)
+  const refined = leaders(found, bands).flatMap((trial) => everyBackground(bandPlaces(trial), attempt, tails))
   const seen = refined.filter((trial) => trial !== null)
   const suggested = suggestions(seen, points, bands, (places) => everyBackground(places, attempt, tails))
   const scored = score(
@@ -130,13 +132,15 @@ const choose = (
       : bandCount(trial.recipe) === bands
   const ranked = scored.toSorted((a, b) => a.score - b.score)
   const favoured = ranked.find(mayBeChosen)
-  const isEmpty = favoured !== undefined && bandCount(favoured.recipe) === 0 && bands === undefined
+  const isEmpty = favoured === undefined || bandCount(favoured.recipe) === 0
+  const without = favoured?.score ?? Infinity
   // bands that no second derivative shows, but that the curve can't do without
-  const indispensable = isEmpty
-    ? ranked
-        .filter(({ recipe, stands, score }) => bandCount(recipe) > 0 && stands && score < favoured.score - ADMISSIBLE)
-        .find(isFitted)
-    : undefined
+  const indispensable =
+    isEmpty && bands === undefined
+      ? ranked
+          .filter(({ recipe, stands, score }) => bandCount(recipe) > 0 && stands && score < without - ADMISSIBLE)
+          .find(isFitted)
+      : undefined
   const best = indispensable ?? favoured
   if (!best)
     return none(

@@ -45,16 +45,10 @@ const fillBand = (
   weight: Float64Array,
   columns: Columns,
 ): void => {
-  switch (shape.kind) {
-    case 'gaussian':
-      return fillGaussian(position, width, x, weight, columns)
-    case 'skewed':
-      return fillSkewed(shape.skew, position, width, x, weight, columns)
-    case 'pseudo-voigt':
-      return fillPseudoVoigt(shape.lorentz, position, width, x, weight, columns)
-    case 'progression':
-      return fillProgression(shape, position, width, x, weight, columns)
-  }
+  if (shape.kind === 'gaussian') fillGaussian(position, width, x, weight, columns)
+  else if (shape.kind === 'skewed') fillSkewed(shape.skew, position, width, x, weight, columns)
+  else if (shape.kind === 'pseudo-voigt') fillPseudoVoigt(shape.lorentz, position, width, x, weight, columns)
+  else fillProgression(shape, position, width, x, weight, columns)
 }
 
 const fillFlank = (

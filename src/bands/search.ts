@@ -1,9 +1,10 @@
 /** From places where bands may be to solved recipes: starts, what comes out empty left out, the closest of each kind. */
 import { BACKGROUNDS, makeRecipe, OTHER_BACKGROUNDS } from './candidates.ts'
+import type { Tolerances } from './levenbergMarquardt.ts'
 import type { Selection } from './points.ts'
 import { apart, findSeeds, NARROWEST_PER_CM, type Seed, WIDEST_PER_CM } from './seeds.ts'
 import { figuresOf } from './shapes.ts'
-import { ROUGH, type Solution, solveRecipe } from './solveRecipe.ts'
+import { type Solution, solveRecipe } from './solveRecipe.ts'
 import type { BackgroundTerm, BandHint, Recipe } from './types.ts'
 
 export interface Found {
@@ -19,32 +20,40 @@ export type Tail = Place | null
 
 export type Attempt = (places: readonly Place[], tail: Tail, background: readonly BackgroundTerm[]) => Found | null
 
-/** Solves recipes on the points. What comes out empty is left out, and the rest starts anew from where it came to rest. */
+/**
+ * Solves recipes on the points. A background term that comes out empty is left out, and the rest starts anew from where it came to rest;
+ * null where the flank comes out empty: without one it is tried anyway.
+ */
 export const searching =
-  (points: readonly Selection[], windowPerCm: readonly [number, number]): Attempt =>
+  (points: readonly Selection[], windowPerCm: readonly [number, number], tolerances: Tolerances): Attempt =>
   (places, tail, background) => {
-    const again = searching(points, windowPerCm)
+    const again = searching(points, windowPerCm, tolerances)
     const recipe = makeRecipe(places, tail ?? false, background, windowPerCm, 'search')
-    const solutions = points.map((selection) => solveRecipe(recipe, selection, ROUGH))
+    const solutions = points.map((selection) => solveRecipe(recipe, selection, tolerances))
     if (!solutions.every((solution) => solution !== null)) return null
     const trial = { recipe, solutions, chi2: solutions.reduce((sum, solution) => sum + solution.chi2, 0) }
     const isEmpty = (k: number) => solutions.every(({ at }) => at.coefficients[k] === 0)
-    if (tail && isEmpty(places.length)) return again(bandPlaces(trial), null, background)
+    if (tail && isEmpty(places.length)) return null
     const used = background.filter((_, k) => !isEmpty(recipe.components.length + k))
     return used.length === background.length || used.length === 0 ? trial : again(bandPlaces(trial), tail, used)
   }
 
 export const closer = (best: Found, other: Found): Found => (other.chi2 < best.chi2 ? other : best)
 
-/** The closest of each number of bands. */
-export const leaders = (found: readonly Found[]): readonly Found[] => {
+/** A number of bands whose closest recipe is off by ten times as much as another's is no longer in the running. */
+const HOPELESS = 100
+
+/** The closest of each number of bands, of those in the running. */
+export const leaders = (found: readonly Found[], bands: number | undefined): readonly Found[] => {
   const best = new Map<number, Found>()
   for (const trial of found) {
     const count = bandCount(trial.recipe)
     const other = best.get(count)
     best.set(count, other ? closer(other, trial) : trial)
   }
-  return [...best.values()]
+  const all = [...best.values()]
+  const limit = HOPELESS * Math.min(...all.map(({ chi2 }) => chi2))
+  return all.filter(({ recipe, chi2 }) => chi2 <= limit || bandCount(recipe) === bands)
 }
 
 export const isLeading = (places: readonly Seed[], seeds: readonly Seed[]): boolean =>

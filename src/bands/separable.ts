@@ -129,9 +129,8 @@ export const separable = (recipe: Recipe, { x, y, weight }: Points): ((alpha: Fl
   // products of all columns: of each component its value and two slopes, then the background, then the measured values
   const size = 3 * (groups.length + rest.length)
   const products = new Float64Array(size * size)
-  rest.forEach((a, i) => {
-    rest.slice(0, i + 1).forEach((b, j) => gramBlock(a, b, products, size, 3 * (bands + i), 3 * (bands + j)))
-  })
+  for (let i = 0; i < rest.length; i++)
+    for (let j = 0; j <= i; j++) gramBlock(rest[i]!, rest[j]!, products, size, 3 * (bands + i), 3 * (bands + j))
   const places = Array.from({ length: m }, (_, i) => (i < bands ? 3 * i : 3 * bands + i - bands))
   const slopes = Array.from({ length: n }, (_, a) => 3 * (a >> 1) + 1 + (a & 1))
   const measured = 3 * bands + exponents.length
