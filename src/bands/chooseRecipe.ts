@@ -16,6 +16,7 @@ import { BACKGROUNDS, flankAtEdge, flankStart, RICH_BACKGROUND } from './candida
 import { fitBands } from './fitBands.ts'
 import { bestOf, isSeen, judged, type Scored, score } from './judge.ts'
 import { findMisfit } from './misfit.ts'
+import { farthest } from './modelSpread.ts'
 import { disorder, joinNeighbours, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
 import { rivalsOf } from './rivals.ts'
 import {
@@ -39,6 +40,8 @@ import { FIRST_LOOK, ROUGH } from './solveRecipe.ts'
 import type { BandHint, ChooseRecipe, Recipe, RecipeChoice } from './types.ts'
 
 const JOINED = 240
+/** For the first look, which takes recipes to be off by more than the curve bends between so many points. */
+const JOINED_FIRST = 64
 const MOST_SEEDS = 5
 /** So many places that the residuals ask for are tried. */
 const MOST_SUGGESTED = 3
@@ -48,9 +51,10 @@ const ADMISSIBLE = 10
 const ADMISSIBLE_WITH_MISFIT = 20
 const MOST_ADMISSIBLE = 6
 const FEWEST_RIVALS = 2
-const MOST_RIVALS = 8
 /** Share of the spread that the first look takes recipes to be off: solutions are found more surely than among weights of noise alone. */
 const FIRST_MISFIT = 0.01
+/** χ² over that of a sensible recipe from which a number of bands is given up after the first look. */
+const HOPELESS = 100
 const NARROWEST_WINDOW_PER_CM = 3000
 
 const none = (spectra: readonly Spectrum[], why: string): RecipeChoice => ({
@@ -90,11 +94,8 @@ const choose = (
   const joined = full.map((points) => joinNeighbours(points, 0, JOINED))
   const seeds = placesOf(joined, hints)
   const tails: readonly Tail[] = [null, flankStart(joined), flankAtEdge(windowPerCm)]
-  const first = searching(
-    joined.map((selection) => reweigh(selection, FIRST_MISFIT)),
-    windowPerCm,
-    FIRST_LOOK,
-  )
+  const few = full.map((points) => joinNeighbours(points, FIRST_MISFIT, JOINED_FIRST))
+  const first = searching(few, windowPerCm, FIRST_LOOK)
   const empty = BACKGROUNDS.flatMap((background) => tails.slice(0, 2).map((tail) => first([], tail, background)))
   const sets = subsets(seeds.slice(0, MOST_SEEDS), hints.length, bands)
   const starts = sets.flatMap((places) =>
@@ -107,7 +108,8 @@ const choose = (
   const misfit = findMisfit(started(found.reduce(closer)), joined)
   const points = joined.map((selection) => reweigh(selection, misfit))
   const attempt = searching(points, windowPerCm, ROUGH)
-  const refined = leaders(found, bands).flatMap((trial) => everyBackground(bandPlaces(trial), attempt, tails))
+  const running = inTheRunning(leaders(found), few, bands)
+  const refined = running.flatMap((trial) => everyBackground(bandPlaces(trial), attempt, tails))
   const seen = refined.filter((trial) => trial !== null)
   const suggested = suggestions(seen, points, bands, (places) => everyBackground(places, attempt, tails))
   const scored = score(
@@ -162,11 +164,19 @@ const choose = (
   const richer = others.find((other) => bandCount(other.recipe) > bandCount(best.recipe))
   const isMissed = recipe.misfit !== undefined
   const shaped = rivalsOf(best, points, isMissed)
-  const rivals = [...new Set<Found>([...(isMissed && richer ? [richer] : []), ...shaped, ...close])].slice(
-    0,
-    MOST_RIVALS,
-  )
+  const rivals = farthest(best, [...(isMissed && richer ? [richer] : []), ...shaped, ...close])
   return { kind: 'chosen', recipe, admissible: [recipe, ...rivals.map((other) => settle(other, joined))] }
+}
+
+/** Numbers of bands whose closest recipe is not off by ten times as much as another that is sensible. */
+const inTheRunning = (
+  candidates: readonly Found[],
+  points: readonly Selection[],
+  bands: number | undefined,
+): readonly Found[] => {
+  const sensible = candidates.filter((trial) => judged(trial, points, FIRST_MISFIT) !== null)
+  const limit = HOPELESS * Math.min(...sensible.map(({ chi2 }) => chi2))
+  return candidates.filter(({ recipe, chi2 }) => chi2 <= limit || bandCount(recipe) === bands)
 }
 
 /** Other starts that came to the same end. */

@@ -1,17 +1,16 @@
 /** One spectrum under one recipe: bands with their uncertainties, or why there are none. */
 import type { Flag, Spectrum } from '../spectrum/types.ts'
 import { type CurveMaximum, curveMaximum } from './maxima.ts'
-import { disorder, joinNeighbours, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
+import { modelSpreads } from './modelSpread.ts'
+import { disorder, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
 import { figuresOf } from './shapes.ts'
-import { ROUGH, type Solution, solveRecipe } from './solveRecipe.ts'
+import { type Solution, solveRecipe } from './solveRecipe.ts'
 import { rmsOf, standing } from './standing.ts'
 import type { BandFit, FitBands, FittedComponent, Recipe } from './types.ts'
 import { repeatabilityOf, type Uncertainty, uncertaintyOf } from './uncertainty.ts'
 
 /** χ²/n over noise and the recipe's misfit from which the recipe is said not to describe the spectrum. */
 const MISFIT_LIMIT = 6
-/** Points to which a spectrum is joined for the fits of other recipes. */
-const JOINED = 240
 
 const unfitted = (spectrum: Spectrum, why: string, points: number, ...flags: Flag[]): BandFit => ({
   kind: 'unfitted',
@@ -230,39 +229,4 @@ const flagsOf = (
     if (held && solution.at.coefficients[k]! > 0) flags.push('at-bound')
   })
   return flags
-}
-
-/**
- * Per component, how far its centre goes under the other admissible recipes. Where the recipe reaches the noise the truth is
- * taken to lie among them: greatest distance / √3, the standard uncertainty of a rectangular distribution (GUM 4.3.7), 0 without a rival.
- * Where it does not, none of them is true, nothing bounds it, and the greatest distance itself is taken; null without a rival, and for a flank.
- */
-const modelSpreads = (recipe: Recipe, admissible: readonly Recipe[], points: Selection): readonly (number | null)[] => {
-  const others = admissible.filter((other) => JSON.stringify(other) !== JSON.stringify(recipe))
-  const centres = (other: Recipe) => {
-    const joined = joinNeighbours(points, other.misfit ?? 0, JOINED)
-    const solution = solveRecipe(other, joined, ROUGH)
-    return solution
-      ? other.components.flatMap(({ kind }, k) =>
-          kind === 'band' && solution.at.coefficients[k]! > 0 ? [solution.parameters[2 * k]!] : [],
-        )
-      : []
-  }
-  if (others.length === 0) {
-    // A recipe that reaches the noise and has no rival has no spread; one that does not has an unknown one.
-    const isAlone = admissible.length > 0 && (recipe.misfit ?? 0) === 0
-    return recipe.components.map(({ kind }) => (kind === 'band' && isAlone ? 0 : null))
-  }
-  const own = solveRecipe(recipe, joinNeighbours(points, recipe.misfit ?? 0, JOINED), ROUGH)
-  const rivals = others.map(centres)
-  return recipe.components.map(({ kind }, k) => {
-    if (kind !== 'band' || !own) return null
-    const centre = own.parameters[2 * k]!
-    const width = own.parameters[2 * k + 1]!
-    const distances = rivals.flatMap((positions) => {
-      const nearest = Math.min(...positions.map((p) => Math.abs(p - centre)))
-      return nearest < width / 2 ? [nearest] : []
-    })
-    return Math.max(0, ...distances) / ((recipe.misfit ?? 0) > 0 ? 1 : Math.sqrt(3))
-  })
 }

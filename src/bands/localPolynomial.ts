@@ -1,12 +1,13 @@
 /** Local polynomials of the measured curve: slopes, curvatures and vertices free of any band shape (Savitzky & Golay 1964). */
 import type { Points } from './separable.ts'
-import { cholesky, inverse } from './symmetric.ts'
+import { cholesky, inverse, solve } from './symmetric.ts'
 import { correlationTime } from './uncertainty.ts'
 
-/** Coefficients of powers of v = (x − centre)/reach, and their covariance. */
+/** Coefficients of powers of v = (x − centre)/reach. */
 export interface LocalPolynomial {
   readonly coefficients: Float64Array
-  readonly covariance: Float64Array
+  /** Of the coefficients, row-major, scaled by the residuals and their correlation; made when asked for. */
+  readonly covariance: () => Float64Array
 }
 
 /** First index with x ≥ value. */
@@ -21,7 +22,7 @@ const indexFrom = (x: Float64Array, value: number): number => {
   return low
 }
 
-/** Weighted least squares over |x − centre| ≤ reach; null where too few points lie there. The covariance is scaled by the residuals and their correlation. */
+/** Weighted least squares over |x − centre| ≤ reach; null where too few points lie there. */
 export const localPolynomial = (
   { x, y, weight }: Points,
   centre: number,
@@ -37,7 +38,7 @@ export const localPolynomial = (
   const powers = new Float64Array(2 * degree + 1)
   for (let i = from; i < to; i++) {
     const v = (x[i]! - centre) / reach
-    let term = weight[i]! ** 2
+    let term = weight[i]! * weight[i]!
     for (let k = 0; k <= 2 * degree; k++) {
       powers[k]! += term
       if (k < m) right[k]! += term * y[i]!
@@ -47,20 +48,21 @@ export const localPolynomial = (
   for (let i = 0; i < m; i++) for (let j = 0; j < m; j++) normal[i * m + j] = powers[i + j]!
   const factor = cholesky(normal, m)
   if (!factor) return null
-  const covariance = inverse(factor)
-  const coefficients = new Float64Array(m)
-  for (let i = 0; i < m; i++) for (let j = 0; j < m; j++) coefficients[i]! += covariance[i * m + j]! * right[j]!
-  const residuals = new Float64Array(to - from)
-  let square = 0
-  for (let i = from; i < to; i++) {
-    const v = (x[i]! - centre) / reach
-    let f = 0
-    for (let k = degree; k >= 0; k--) f = f * v + coefficients[k]!
-    residuals[i - from] = (y[i]! - f) * weight[i]!
-    square += residuals[i - from]! ** 2
+  const coefficients = solve(factor, right)
+  const covariance = () => {
+    const residuals = new Float64Array(to - from)
+    let square = 0
+    for (let i = from; i < to; i++) {
+      const v = (x[i]! - centre) / reach
+      let f = 0
+      for (let k = degree; k >= 0; k--) f = f * v + coefficients[k]!
+      residuals[i - from] = (y[i]! - f) * weight[i]!
+      square += residuals[i - from]! ** 2
+    }
+    const scale = (square / (to - from - m)) * correlationTime(residuals)
+    return inverse(factor).map((c) => c * scale)
   }
-  const scale = (square / (to - from - m)) * correlationTime(residuals)
-  return { coefficients, covariance: covariance.map((c) => c * scale) }
+  return { coefficients, covariance }
 }
 
 /** First or second derivative by v. */

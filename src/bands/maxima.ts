@@ -69,7 +69,9 @@ export const curveMaximum = (points: Points, positionPerCm: number, widthPerCm: 
   return null
 }
 
-const uVertex = ({ coefficients, covariance }: LocalPolynomial, v: number, reach: number): number | null => {
+const uVertex = (local: LocalPolynomial, v: number, reach: number): number | null => {
+  const { coefficients } = local
+  const covariance = local.covariance()
   const m = coefficients.length
   let variance = 0
   for (let i = 1; i < m; i++) for (let j = 1; j < m; j++) variance += i * j * v ** (i + j - 2) * covariance[i * m + j]!

@@ -4,7 +4,7 @@
  */
 import { flankStart, makeRecipe } from './candidates.ts'
 import type { Selection } from './points.ts'
-import { bandPlaces, closer, type Found, started } from './search.ts'
+import { bandPlaces, closer, type Found, missingBands, searching, started, tailOf } from './search.ts'
 import { ROUGH, solveRecipe } from './solveRecipe.ts'
 import type { BackgroundTerm, Recipe } from './types.ts'
 
@@ -60,8 +60,27 @@ const tiltedRivals = (best: Found, points: readonly Selection[]): readonly Found
   })
 }
 
-/** With skewed bands where the chosen recipe misses the noise, and on a tilted baseline. */
+/** So many places that the residuals ask for are tried. */
+const MOST_RICHER = 4
+
+/**
+ * With a band more where its residuals ask for one, and with one more still, however little that gains: positions move most
+ * with the number of bands.
+ */
+const richerRivals = (best: Found, points: readonly Selection[]): readonly Found[] => {
+  const attempt = searching(points, best.recipe.windowPerCm, ROUGH)
+  const richer = (found: Found, most: number): readonly Found[] =>
+    missingBands(found, points)
+      .slice(0, most)
+      .map((place) => attempt([...bandPlaces(found), place], tailOf(found), found.recipe.background))
+      .filter((trial) => trial !== null)
+      .filter(({ chi2 }) => chi2 < found.chi2)
+  const once = richer(best, MOST_RICHER)
+  return [...once, ...once.flatMap((found) => richer(found, 2))]
+}
+
+/** On a tilted baseline, and where the chosen recipe misses the noise with skewed bands and with one more. */
 export const rivalsOf = (best: Found, points: readonly Selection[], isMissed: boolean): readonly Found[] => [
-  ...(isMissed ? skewedRivals(best, points) : []),
+  ...(isMissed ? [...richerRivals(best, points), ...skewedRivals(best, points)] : []),
   ...tiltedRivals(best, points),
 ]

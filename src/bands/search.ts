@@ -40,20 +40,15 @@ export const searching =
 
 export const closer = (best: Found, other: Found): Found => (other.chi2 < best.chi2 ? other : best)
 
-/** A number of bands whose closest recipe is off by ten times as much as another's is no longer in the running. */
-const HOPELESS = 100
-
-/** The closest of each number of bands, of those in the running. */
-export const leaders = (found: readonly Found[], bands: number | undefined): readonly Found[] => {
+/** The closest of each number of bands. */
+export const leaders = (found: readonly Found[]): readonly Found[] => {
   const best = new Map<number, Found>()
   for (const trial of found) {
     const count = bandCount(trial.recipe)
     const other = best.get(count)
     best.set(count, other ? closer(other, trial) : trial)
   }
-  const all = [...best.values()]
-  const limit = HOPELESS * Math.min(...all.map(({ chi2 }) => chi2))
-  return all.filter(({ recipe, chi2 }) => chi2 <= limit || bandCount(recipe) === bands)
+  return [...best.values()]
 }
 
 export const isLeading = (places: readonly Seed[], seeds: readonly Seed[]): boolean =>
@@ -114,11 +109,21 @@ export const missingBands = (trial: Found, points: readonly Selection[]): readon
   return apart(residual.flatMap((selection) => findSeeds(selection)).sort((a, b) => b.height - a.height)).filter(isFree)
 }
 
+/** Where its flank came to rest; null where it has none. */
+export const tailOf = (trial: Pick<Found, 'recipe' | 'solutions'>): Tail => {
+  const flank = trial.recipe.components.findIndex(({ kind }) => kind === 'flank')
+  return flank < 0 ? null : placeOf(trial, flank)
+}
+
 /** The recipe with its places as found. */
 export const started = (trial: Found, bounds: 'search' | 'locked' = 'search'): Recipe => {
-  const flank = trial.recipe.components.findIndex(({ kind }) => kind === 'flank')
-  const tail = flank < 0 ? false : placeOf(trial, flank)
-  const recipe = makeRecipe(bandPlaces(trial), tail, trial.recipe.background, trial.recipe.windowPerCm, bounds)
+  const recipe = makeRecipe(
+    bandPlaces(trial),
+    tailOf(trial) ?? false,
+    trial.recipe.background,
+    trial.recipe.windowPerCm,
+    bounds,
+  )
   const components = recipe.components.map((component, k) => {
     const { shape } = trial.recipe.components[k]!
     return { ...component, shape }

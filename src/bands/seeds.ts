@@ -3,7 +3,7 @@
  * −8 ln2 h/w² at its centre and inflections at ±w/√(8 ln2), so shoulders without a maximum of their own are seen too, and the
  * distance of the inflections tells the width.
  */
-import { localPolynomial } from './localPolynomial.ts'
+import { type LocalPolynomial, localPolynomial } from './localPolynomial.ts'
 import type { Points } from './separable.ts'
 import { FOUR_LN2 } from './shapes.ts'
 
@@ -40,24 +40,22 @@ const seedsAt = (points: Points, reachPerCm: number): readonly Seed[] => {
   const at = (k: number) => first + k * step
   const curvature = Array.from({ length: STEPS + 1 }, (_, k) => {
     const local = localPolynomial(points, at(k), reachPerCm, 2)
-    if (!local) return { value: 0, u: Infinity }
-    return {
-      value: (2 * local.coefficients[2]!) / reachPerCm ** 2,
-      u: (2 * Math.sqrt(local.covariance[8]!)) / reachPerCm ** 2,
-    }
+    return local ? { value: (2 * local.coefficients[2]!) / reachPerCm ** 2, local } : { value: 0, local }
   })
+  const u = (local: LocalPolynomial) => (2 * Math.sqrt(local.covariance()[8]!)) / reachPerCm ** 2
   const crossing = (k: number, direction: 1 | -1) => {
     let i = k
     while (i > 0 && i < STEPS && curvature[i]!.value < 0) i += direction
     return Math.abs(i - k) * step
   }
-  return curvature.flatMap(({ value, u }, k): Seed[] => {
+  return curvature.flatMap(({ value, local }, k): Seed[] => {
     const isMinimum =
       k > 0 &&
       k < STEPS &&
       value <= curvature[k - 1]!.value &&
       value < curvature[k + 1]!.value &&
-      value < -SIGNIFICANT * u
+      local !== null &&
+      value < -SIGNIFICANT * u(local)
     if (!isMinimum) return []
     const half = Math.min(crossing(k, 1), crossing(k, -1))
     const widthPerCm = Math.min(WIDEST_PER_CM, Math.max(NARROWEST_PER_CM, half * Math.sqrt(2 * FOUR_LN2)))

@@ -115,7 +115,13 @@ export const separable = (recipe: Recipe, { x, y, weight }: Points): ((alpha: Fl
   const n = 2 * bands
   const edge = recipe.windowPerCm[1]
   const origin = scatterOrigin(recipe)
-  const column = () => new Float64Array(count)
+  // one piece of memory for all columns: many small ones cost as much as the sums
+  const memory = new Float64Array(count * (n + m + 2))
+  let taken = 0
+  const column = () => {
+    taken += count
+    return memory.subarray(taken - count, taken)
+  }
   const target = column()
   for (let i = 0; i < count; i++) target[i] = y[i]! * weight[i]!
   const groups: readonly Triple[] = components.map(() => [column(), column(), column()])
@@ -124,8 +130,9 @@ export const separable = (recipe: Recipe, { x, y, weight }: Points): ((alpha: Fl
     for (let i = 0; i < count; i++) background[i] = backgroundAt(exponent, origin, x[i]!) * weight[i]!
     return background
   })
-  const linearColumns = inTriples([...groups.map(([value]) => value), ...fixed], column)
-  const rest = inTriples([...fixed, target], column)
+  const empty = column()
+  const linearColumns = inTriples([...groups.map(([value]) => value), ...fixed], empty)
+  const rest = inTriples([...fixed, target], empty)
   // products of all columns: of each component its value and two slopes, then the background, then the measured values
   const size = 3 * (groups.length + rest.length)
   const products = new Float64Array(size * size)
@@ -162,20 +169,21 @@ export const separable = (recipe: Recipe, { x, y, weight }: Points): ((alpha: Fl
     const dD = pick(slopes, slopes)
     const gradient = new Float64Array(n)
     const hessian = new Float64Array(n * n)
-    const halves: Float64Array[] = []
+    const held = active.length
+    const halves = new Float64Array(n * held)
     for (let a = 0; a < n; a++) {
       const c = coefficients[a >> 1]!
-      const crossed = new Float64Array(active.length)
       let pull = products[slopes[a]! * size + measured]!
-      for (let k = 0; k < active.length; k++) {
-        crossed[k] = phiD[active[k]! * n + a]!
-        pull -= coefficients[active[k]!]! * crossed[k]!
+      for (let k = 0; k < held; k++) {
+        const crossed = phiD[active[k]! * n + a]!
+        halves[a * held + k] = crossed
+        pull -= coefficients[active[k]!]! * crossed
       }
       gradient[a] = -c * pull
-      halves.push(forward(factor, crossed))
+      forward(factor, halves, a * held)
       for (let b = 0; b <= a; b++) {
         let schur = dD[a * n + b]!
-        for (let k = 0; k < active.length; k++) schur -= halves[a]![k]! * halves[b]![k]!
+        for (let k = 0; k < held; k++) schur -= halves[a * held + k]! * halves[b * held + k]!
         hessian[a * n + b] = hessian[b * n + a] = c * coefficients[b >> 1]! * schur
       }
     }
@@ -183,12 +191,12 @@ export const separable = (recipe: Recipe, { x, y, weight }: Points): ((alpha: Fl
   }
 }
 
-/** Filled up with empty columns. */
-const inTriples = (columns: readonly Float64Array[], empty: () => Float64Array): readonly Triple[] =>
+/** Filled up with an empty column. */
+const inTriples = (columns: readonly Float64Array[], empty: Float64Array): readonly Triple[] =>
   Array.from({ length: Math.ceil(columns.length / 3) }, (_, k) => [
     columns[3 * k]!,
-    columns[3 * k + 1] ?? empty(),
-    columns[3 * k + 2] ?? empty(),
+    columns[3 * k + 1] ?? empty,
+    columns[3 * k + 2] ?? empty,
   ])
 
 const takeAway = (from: Float64Array, [a, b, c]: Triple, coefficients: Float64Array, at: number): void => {

@@ -11,8 +11,8 @@ export interface Solution extends Minimum<Separated> {
 }
 
 const APPROACH: Tolerances = { relativeChange: 1e-3, gradient: 1e-4, step: 1e-5, iterations: 40 }
-/** Enough to tell recipes apart: a change of 10⁻⁵ of χ² is far below a point of score. */
-export const ROUGH: Tolerances = { relativeChange: 1e-5, gradient: 1e-5, step: 1e-6, iterations: 50 }
+/** Enough to tell recipes apart: a change of 10⁻⁴ of χ² is far below a point of score. */
+export const ROUGH: Tolerances = { relativeChange: 1e-4, gradient: 1e-5, step: 1e-6, iterations: 50 }
 /** Enough to tell which starts deserve another. */
 export const FIRST_LOOK: Tolerances = { relativeChange: 1e-2, gradient: 1e-3, step: 1e-4, iterations: 20 }
 const FINAL: Tolerances = { relativeChange: 1e-9, gradient: 1e-9, step: 1e-9, iterations: 100 }

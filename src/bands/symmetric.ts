@@ -33,21 +33,20 @@ export const cholesky = (a: Float64Array, n: number, tolerance = 1e-13): Cholesk
   return { n, lower, scale }
 }
 
-/** L⁻¹ S b: half of a solution; the dot product of two of them is b' A⁻¹ c. */
-export const forward = ({ n, lower, scale }: Cholesky, b: Float64Array): Float64Array => {
-  const x = new Float64Array(n)
+/** L⁻¹ S b in place of b, which starts at `from`: half of a solution; the dot product of two of them is b' A⁻¹ c. */
+export const forward = ({ n, lower, scale }: Cholesky, b: Float64Array, from = 0): void => {
   for (let i = 0; i < n; i++) {
-    let sum = b[i]! * scale[i]!
-    for (let k = 0; k < i; k++) sum -= lower[i * n + k]! * x[k]!
-    x[i] = sum / lower[i * n + i]!
+    let sum = b[from + i]! * scale[i]!
+    for (let k = 0; k < i; k++) sum -= lower[i * n + k]! * b[from + k]!
+    b[from + i] = sum / lower[i * n + i]!
   }
-  return x
 }
 
 /** A⁻¹ b */
 export const solve = (factor: Cholesky, b: Float64Array): Float64Array => {
   const { n, lower, scale } = factor
-  const x = forward(factor, b)
+  const x = b.slice()
+  forward(factor, x)
   for (let i = n - 1; i >= 0; i--) {
     let sum = x[i]!
     for (let k = i + 1; k < n; k++) sum -= lower[k * n + i]! * x[k]!
