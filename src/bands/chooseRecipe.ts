@@ -13,7 +13,7 @@
  */
 import type { Spectrum } from '../spectrum/types.ts'
 import { BACKGROUNDS, flankAtEdge, flankStart, RICH_BACKGROUND } from './candidates.ts'
-import { fitBands } from './fitBands.ts'
+import { showsBand } from './fitBands.ts'
 import { bestOf, isSeen, judged, type Scored, score } from './judge.ts'
 import { findMisfit } from './misfit.ts'
 import { farthest } from './modelSpread.ts'
@@ -124,8 +124,7 @@ const choose = (
   }
   // two bands in place of one may each be undetermined on all the points
   const isFitted = (trial: Scored) =>
-    bandCount(trial.recipe) === 0 ||
-    spectra.some((spectrum) => fitBands(spectrum, recipeOf(trial), []).kind === 'fitted')
+    bandCount(trial.recipe) === 0 || spectra.some((spectrum) => showsBand(spectrum, recipeOf(trial)))
   const mayBeChosen = (trial: Scored) =>
     bands === undefined
       ? trial.stands &&

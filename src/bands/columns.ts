@@ -1,12 +1,10 @@
 /** The columns of a fit: a component's curve times the weights, and its derivatives by its two search parameters (shapes.ts). */
+import type { Triple } from './gram.ts'
 import { FOUR_LN2, linesOf } from './shapes.ts'
 import type { BandShape, RecipeComponent } from './types.ts'
 
-export interface Columns {
-  readonly value: Float64Array
-  readonly byFirst: Float64Array
-  readonly bySecond: Float64Array
-}
+/** Value, derivative by the first and by the second parameter. */
+type Columns = Triple
 
 /** Beyond this many widths a Gaussian is below 10⁻¹⁴ and left out. */
 const REACH = 3.4
@@ -57,7 +55,7 @@ const fillFlank = (
   edge: number,
   x: Float64Array,
   weight: Float64Array,
-  { value, byFirst, bySecond }: Columns,
+  [value, byFirst, bySecond]: Columns,
 ): void => {
   for (let i = 0; i < x.length; i++) {
     const t = x[i]! - edge
@@ -74,7 +72,7 @@ const fillGaussian = (
   width: number,
   x: Float64Array,
   weight: Float64Array,
-  { value, byFirst, bySecond }: Columns,
+  [value, byFirst, bySecond]: Columns,
 ): void => {
   const inverse = 1 / width
   const slope = 2 * FOUR_LN2 * inverse
@@ -100,7 +98,7 @@ const fillSkewed = (
   width: number,
   x: Float64Array,
   weight: Float64Array,
-  { value, byFirst, bySecond }: Columns,
+  [value, byFirst, bySecond]: Columns,
 ): void => {
   for (let i = 0; i < x.length; i++) {
     const u = (x[i]! - position) / width
@@ -122,7 +120,7 @@ const fillPseudoVoigt = (
   width: number,
   x: Float64Array,
   weight: Float64Array,
-  { value, byFirst, bySecond }: Columns,
+  [value, byFirst, bySecond]: Columns,
 ): void => {
   for (let i = 0; i < x.length; i++) {
     const u = (x[i]! - position) / width
@@ -141,7 +139,7 @@ const fillProgression = (
   width: number,
   x: Float64Array,
   weight: Float64Array,
-  { value, byFirst, bySecond }: Columns,
+  [value, byFirst, bySecond]: Columns,
 ): void => {
   const inverse = 1 / width
   const slope = 2 * FOUR_LN2 * inverse

@@ -12,7 +12,12 @@ import { repeatabilityOf, type Uncertainty, uncertaintyOf } from './uncertainty.
 /** χ²/n over noise and the recipe's misfit from which the recipe is said not to describe the spectrum. */
 const MISFIT_LIMIT = 6
 
-const unfitted = (spectrum: Spectrum, why: string, points: number, ...flags: Flag[]): BandFit => ({
+const unfitted = (
+  spectrum: Spectrum,
+  why: string,
+  points: number,
+  ...flags: Flag[]
+): Extract<BandFit, { kind: 'unfitted' }> => ({
   kind: 'unfitted',
   why,
   points,
@@ -25,6 +30,23 @@ const unfitted = (spectrum: Spectrum, why: string, points: number, ...flags: Fla
  * Outcome `unfitted` where the spectrum is in disorder, has too few points, or no band stands above its noise.
  */
 export const fitBands: FitBands = (spectrum, recipe, admissible) => {
+  const look = lookAt(spectrum, recipe)
+  return look.kind === 'unfitted' ? look : fitted(spectrum, recipe, admissible, look)
+}
+
+/** Whether the recipe shows any band in the spectrum, without what takes longer to say of it. */
+export const showsBand = (spectrum: Spectrum, recipe: Recipe): boolean => lookAt(spectrum, recipe).kind === 'solved'
+
+interface Solved {
+  readonly kind: 'solved'
+  readonly points: Selection
+  readonly solution: Solution
+  readonly uncertainty: Uncertainty | null
+  /** Which components stand above the noise. */
+  readonly present: readonly boolean[]
+}
+
+const lookAt = (spectrum: Spectrum, recipe: Recipe): Solved | Extract<BandFit, { kind: 'unfitted' }> => {
   const fault = disorder(spectrum)
   if (fault !== null) return unfitted(spectrum, `The spectrum can't be fitted: ${fault}.`, 0)
   const points = selectPoints(spectrum, recipe.windowPerCm, recipe.misfit ?? 0)
@@ -40,17 +62,14 @@ export const fitBands: FitBands = (spectrum, recipe, admissible) => {
   const present = standing(recipe, solution, points, uncertainty)
   if (!recipe.components.some(({ kind }, k) => kind === 'band' && present[k]))
     return unfitted(spectrum, 'No band stands above the noise.', count, 'no-band')
-  return fitted(spectrum, recipe, admissible, points, solution, uncertainty, present)
+  return { kind: 'solved', points, solution, uncertainty, present }
 }
 
 const fitted = (
   spectrum: Spectrum,
   recipe: Recipe,
   admissible: readonly Recipe[],
-  points: Selection,
-  solution: Solution,
-  uncertainty: Uncertainty | null,
-  present: readonly boolean[],
+  { points, solution, uncertainty, present }: Solved,
 ): BandFit => {
   const spreads = modelSpreads(recipe, admissible, points)
   const bare = recipe.components.map((_, k) => componentOf(recipe, solution, uncertainty, k))

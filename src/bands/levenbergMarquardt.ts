@@ -8,7 +8,7 @@
  * Methods for Non-Linear Least Squares Problems, 2004, §3.2). Stops are those of Moré (1978): the cosine
  * between residuals and tangent space, the relative change of F, the relative step.
  */
-import { cholesky, gathered, solve, submatrix } from './symmetric.ts'
+import { cholesky, gathered, roomFor, solveInPlace, submatrix } from './symmetric.ts'
 
 /** F, Jᵀr and JᵀJ (row-major) at a point. */
 export interface Quadratic {
@@ -64,30 +64,34 @@ const largestCosine = ({ cost, gradient, hessian }: Quadratic, free: readonly nu
   return largest
 }
 
-/** Damped step over the free parameters, cut at the box; null where the damped matrix is singular. */
-const boundedStep = (
-  p: Float64Array,
-  at: Quadratic,
-  free: readonly number[],
-  { lower, upper }: Box,
-  diagonal: Float64Array,
-  lambda: number,
-): Float64Array | null => {
-  const n = p.length
-  // A column without influence (a band of height zero) has no step.
-  const moving = free.filter((i) => at.hessian[i * n + i]! > 0)
-  const m = moving.length
-  const damped = submatrix(at.hessian, n, moving)
-  for (let i = 0; i < m; i++) damped[i * m + i]! += lambda * diagonal[moving[i]!]!
-  const factor = cholesky(damped, m)
-  if (!factor) return null
-  const partial = solve(factor, gathered(at.gradient, moving))
-  const step = new Float64Array(n)
-  for (let k = 0; k < m; k++) {
-    const i = moving[k]!
-    step[i] = Math.min(upper[i]!, Math.max(lower[i]!, p[i]! - partial[k]!)) - p[i]!
+/** Damped step over the free parameters, cut at the box, into `step`; false where the damped matrix is singular. */
+const boundedSteps = (n: number, { lower, upper }: Box) => {
+  const room = roomFor(n)
+  const damped = new Float64Array(n * n)
+  const partial = new Float64Array(n)
+  return (
+    p: Float64Array,
+    at: Quadratic,
+    free: readonly number[],
+    diagonal: Float64Array,
+    lambda: number,
+    step: Float64Array,
+  ): boolean => {
+    // A column without influence (a band of height zero) has no step.
+    const moving = free.filter((i) => at.hessian[i * n + i]! > 0)
+    const m = moving.length
+    submatrix(at.hessian, n, moving, damped)
+    for (let i = 0; i < m; i++) damped[i * m + i]! += lambda * diagonal[moving[i]!]!
+    const factor = cholesky(damped, m, 1e-13, room)
+    if (!factor) return false
+    solveInPlace(factor, gathered(at.gradient, moving, partial))
+    step.fill(0)
+    for (let k = 0; k < m; k++) {
+      const i = moving[k]!
+      step[i] = Math.min(upper[i]!, Math.max(lower[i]!, p[i]! - partial[k]!)) - p[i]!
+    }
+    return true
   }
-  return step
 }
 
 /** F(p) − F(p + s) as the quadratic model has it. */
@@ -109,19 +113,23 @@ const isTiny = (step: Float64Array, p: Float64Array, tolerance: number): boolean
 
 /**
  * The minimum of `objective` in the box, from `start` (moved into the box). `objective` returns null where the
- * model can't be evaluated; the step is then shortened. Null where the start can't be evaluated.
+ * model can't be evaluated; the step is then shortened. It may write over `spare`, an earlier result. Null where the start can't be evaluated.
  */
 export const minimise = <Q extends Quadratic>(
-  objective: (p: Float64Array) => Q | null,
+  objective: (p: Float64Array, spare?: Q | null) => Q | null,
   start: Float64Array,
   box: Box,
   tolerances: Tolerances,
 ): Minimum<Q> | null => {
-  let p = start.map((v, i) => Math.min(box.upper[i]!, Math.max(box.lower[i]!, v)))
+  let p: Float64Array = start.map((v, i) => Math.min(box.upper[i]!, Math.max(box.lower[i]!, v)))
   let at = objective(p)
   if (!at || !Number.isFinite(at.cost)) return null
   const n = p.length
   const diagonal = new Float64Array(n)
+  const step = new Float64Array(n)
+  let trialPoint: Float64Array = new Float64Array(n)
+  let spare: Q | null = null
+  const boundedStep = boundedSteps(n, box)
   let lambda = tolerances.damping ?? 1e-3
   let growth = 2
   for (let iteration = 0; iteration < tolerances.iterations; iteration++) {
@@ -129,16 +137,14 @@ export const minimise = <Q extends Quadratic>(
     if (largestCosine(at, free) <= tolerances.gradient)
       return { parameters: p, at, iterations: iteration, stopped: 'gradient' }
     for (let i = 0; i < n; i++) diagonal[i] = Math.max(diagonal[i]!, at.hessian[i * n + i]!)
-    const step = boundedStep(p, at, free, box, diagonal, lambda)
-    if (step) {
+    if (boundedStep(p, at, free, diagonal, lambda, step)) {
       if (isTiny(step, p, tolerances.step)) return { parameters: p, at, iterations: iteration, stopped: 'step' }
       const predicted = predictedReduction(at, step)
       // An undamped step that promises no more than this need not be tried.
       if (lambda < 1e-2 && predicted >= 0 && predicted <= tolerances.relativeChange * at.cost)
         return { parameters: p, at, iterations: iteration, stopped: 'relative change' }
-      const trialPoint = new Float64Array(n)
       for (let i = 0; i < n; i++) trialPoint[i] = p[i]! + step[i]!
-      const trial: Q | null = predicted > 0 ? objective(trialPoint) : null
+      const trial: Q | null = predicted > 0 ? objective(trialPoint, spare) : null
       const gained: number = trial ? at.cost - trial.cost : -1
       const within = (share: number) => Math.abs(gained) <= share * at!.cost && predicted <= share * at!.cost
       const converged = within(tolerances.relativeChange)
@@ -148,11 +154,15 @@ export const minimise = <Q extends Quadratic>(
         const ratio = belowRounding ? 1 : gained / predicted
         lambda = Math.max(1e-12, lambda * Math.max(0.1, 1 - (2 * ratio - 1) ** 3))
         growth = 2
+        const [before, resultBefore]: [Float64Array, Q] = [p, at]
         p = trialPoint
         at = trial
+        trialPoint = before
+        spare = resultBefore
         if (converged) return { parameters: p, at, iterations: iteration + 1, stopped: 'relative change' }
         continue
       }
+      spare = trial ?? spare
       if (trial && converged) return { parameters: p, at, iterations: iteration + 1, stopped: 'relative change' }
     }
     lambda *= growth

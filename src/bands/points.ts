@@ -37,19 +37,25 @@ export const selectPoints = (
   [from, to]: readonly [number, number],
   misfit: number,
 ): Selection => {
-  const keep: number[] = []
+  const [xs, ys, noises] = [wavenumberPerCm.slice(), absorbance.slice(), noise.slice()]
+  let count = 0
   for (let i = 0; i < used.length; i++) {
     const x = wavenumberPerCm[i]!
-    if (used[i] === 1 && x >= from && x <= to && Number.isFinite(absorbance[i]!) && noise[i]! > 0) keep.push(i)
+    if (used[i] !== 1 || x < from || x > to || !Number.isFinite(absorbance[i]!) || !(noise[i]! > 0)) continue
+    xs[count] = x
+    ys[count] = absorbance[i]!
+    noises[count] = noise[i]!
+    count++
   }
-  const pick = (a: Float64Array) => Float64Array.from(keep, (i) => a[i]!)
-  return weigh(pick(wavenumberPerCm), pick(absorbance), pick(noise), misfit)
+  return weigh(xs.subarray(0, count), ys.subarray(0, count), noises.subarray(0, count), misfit)
 }
 
 const weigh = (x: Float64Array, y: Float64Array, noise: Float64Array, misfit: number): Selection => {
   const spread = weightedSpread(y, noise)
   const floor = (misfit * spread) ** 2
-  return { x, y, noise, spread, weight: noise.map((s) => 1 / Math.sqrt(s * s + floor)) }
+  const weight = new Float64Array(noise.length)
+  for (let i = 0; i < weight.length; i++) weight[i] = 1 / Math.sqrt(noise[i]! * noise[i]! + floor)
+  return { x, y, noise, spread, weight }
 }
 
 /** The same points under another misfit. */

@@ -58,12 +58,29 @@ export const isLeading = (places: readonly Seed[], seeds: readonly Seed[]): bool
 export const broadened = (places: readonly Seed[]): readonly Place[] =>
   places.map((place, k) => (k === 0 ? place : { ...place, widthPerCm: Math.min(WIDEST_PER_CM, 2 * place.widthPerCm) }))
 
+/**
+ * These places on every background, without a flank and with one from each start. What reaches the noise rests in no false minimum and
+ * gains nothing by a flank that could pay for it: further starts are not tried.
+ */
 export const everyBackground = (
   places: readonly Place[],
   attempt: Attempt,
   tails: readonly Tail[],
 ): readonly (Found | null)[] =>
-  [...BACKGROUNDS, ...OTHER_BACKGROUNDS].flatMap((background) => tails.map((tail) => attempt(places, tail, background)))
+  [...BACKGROUNDS, ...OTHER_BACKGROUNDS].flatMap((background) => {
+    const found: (Found | null)[] = []
+    for (const tail of tails) {
+      if (found.some((trial) => trial && isAtNoise(trial))) break
+      found.push(attempt(places, tail, background))
+    }
+    return found
+  })
+
+/** χ² within three standard deviations of the number of points. */
+const isAtNoise = ({ solutions, chi2 }: Found): boolean => {
+  const count = solutions.reduce((sum, { at }) => sum + at.residuals.length, 0)
+  return chi2 < count + 3 * Math.sqrt(2 * count)
+}
 
 export const bandCount = ({ components }: Recipe): number => components.filter(({ kind }) => kind === 'band').length
 

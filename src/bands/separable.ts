@@ -12,7 +12,7 @@ import { fillColumns } from './columns.ts'
 import { gramBlock, type Triple } from './gram.ts'
 import type { Quadratic } from './levenbergMarquardt.ts'
 import { backgroundAt, backgroundExponents, scatterOrigin } from './shapes.ts'
-import { type Cholesky, cholesky, forward, gathered, solve, submatrix } from './symmetric.ts'
+import { type Cholesky, cholesky, forward, gathered, roomFor, solveInPlace, submatrix } from './symmetric.ts'
 import type { Recipe } from './types.ts'
 
 /** Points that enter a fit; `weight` is 1/σ. */
@@ -23,10 +23,11 @@ export interface Points {
 }
 
 export interface Separated extends Quadratic {
+  cost: number
   /** Heights in order of the components, then the background terms. */
   readonly coefficients: Float64Array
   /** Indices of the coefficients that are not held at zero. */
-  readonly active: readonly number[]
+  active: readonly number[]
   /** ΦᵀΦ and ΦᵀD·c (unscaled by c), DᵀD; kept for the covariance of everything. */
   readonly phiPhi: Float64Array
   readonly phiD: Float64Array
@@ -36,38 +37,49 @@ export interface Separated extends Quadratic {
 }
 
 interface Linear {
-  readonly coefficients: Float64Array
   readonly active: readonly number[]
   /** Of the Gram matrix over what is active. */
   readonly factor: Cholesky
 }
 
-/** Least squares with some coefficients ≥ 0 (Lawson & Hanson 1974, ch. 23, by dropping from the full set and letting back in). */
-const nonNegative = (gram: Float64Array, right: Float64Array, signed: readonly boolean[]): Linear | null => {
-  const m = right.length
-  let active: readonly number[] = indicesWhere(m, (i) => gram[i * m + i]! > 0)
-  for (let round = 0; round < 3 * m; round++) {
-    const factor = cholesky(active.length === m ? gram : submatrix(gram, m, active), active.length)
-    if (!factor) {
-      // Two columns tell the same: let go of the last one that may be zero.
-      const last = active.findLast((i) => !signed[i]) ?? active.at(-1)
-      if (last === undefined) return null
-      active = active.filter((i) => i !== last)
-      continue
+/**
+ * Least squares with some coefficients ≥ 0 (Lawson & Hanson 1974, ch. 23, by dropping from the full set and letting back in). A solver
+ * for m coefficients, which are written into its last argument.
+ */
+const nonNegative = (m: number) => {
+  const room = roomFor(m)
+  const part = new Float64Array(m * m)
+  const solution = new Float64Array(m)
+  return (
+    gram: Float64Array,
+    right: Float64Array,
+    signed: readonly boolean[],
+    coefficients: Float64Array,
+  ): Linear | null => {
+    let active: readonly number[] = indicesWhere(m, (i) => gram[i * m + i]! > 0)
+    for (let round = 0; round < 3 * m; round++) {
+      const factor = cholesky(submatrix(gram, m, active, part), active.length, 1e-13, room)
+      if (!factor) {
+        // Two columns tell the same: let go of the last one that may be zero.
+        const last = active.findLast((i) => !signed[i]) ?? active.at(-1)
+        if (last === undefined) return null
+        active = active.filter((i) => i !== last)
+        continue
+      }
+      solveInPlace(factor, gathered(right, active, solution))
+      const worst = mostNegative(solution, active, signed)
+      if (worst !== null) {
+        active = active.filter((i) => i !== worst)
+        continue
+      }
+      coefficients.fill(0)
+      for (let k = 0; k < active.length; k++) coefficients[active[k]!] = solution[k]!
+      const back = round > m ? null : letBack(gram, right, coefficients, active)
+      if (back === null) return { active, factor }
+      active = [...active, back].sort((a, b) => a - b)
     }
-    const solution = solve(factor, gathered(right, active))
-    const worst = mostNegative(solution, active, signed)
-    if (worst !== null) {
-      active = active.filter((i) => i !== worst)
-      continue
-    }
-    const coefficients = new Float64Array(m)
-    for (let k = 0; k < active.length; k++) coefficients[active[k]!] = solution[k]!
-    const back = round > m ? null : letBack(gram, right, coefficients, active)
-    if (back === null) return { coefficients, active, factor }
-    active = [...active, back].sort((a, b) => a - b)
+    return null
   }
-  return null
 }
 
 const indicesWhere = (count: number, holds: (i: number) => boolean): readonly number[] => {
@@ -105,34 +117,19 @@ const letBack = (
   return null
 }
 
-/** The objective of a recipe on points, to be minimised over `searchSpace(recipe)`. Its columns are written anew by each call. */
-export const separable = (recipe: Recipe, { x, y, weight }: Points): ((alpha: Float64Array) => Separated | null) => {
+/**
+ * The objective of a recipe on points, to be minimised over `searchSpace(recipe)`. Its columns are written anew by each call; a result that
+ * is no longer needed may be given back as `spare`, to be written over.
+ */
+export const separable = (recipe: Recipe, points: Points): Objective => {
+  const { x, weight } = points
   const { components } = recipe
-  const exponents = backgroundExponents(recipe)
-  const count = x.length
   const bands = components.length
+  const edge = recipe.windowPerCm[1]
+  const { groups, rest, linearColumns, target, exponents } = columnsOf(recipe, points)
   const m = bands + exponents.length
   const n = 2 * bands
-  const edge = recipe.windowPerCm[1]
-  const origin = scatterOrigin(recipe)
-  // one piece of memory for all columns: many small ones cost as much as the sums
-  const memory = new Float64Array(count * (n + m + 2))
-  let taken = 0
-  const column = () => {
-    taken += count
-    return memory.subarray(taken - count, taken)
-  }
-  const target = column()
-  for (let i = 0; i < count; i++) target[i] = y[i]! * weight[i]!
-  const groups: readonly Triple[] = components.map(() => [column(), column(), column()])
-  const fixed = exponents.map((exponent) => {
-    const background = column()
-    for (let i = 0; i < count; i++) background[i] = backgroundAt(exponent, origin, x[i]!) * weight[i]!
-    return background
-  })
-  const empty = column()
-  const linearColumns = inTriples([...groups.map(([value]) => value), ...fixed], empty)
-  const rest = inTriples([...fixed, target], empty)
+  const count = x.length
   // products of all columns: of each component its value and two slopes, then the background, then the measured values
   const size = 3 * (groups.length + rest.length)
   const products = new Float64Array(size * size)
@@ -140,40 +137,40 @@ export const separable = (recipe: Recipe, { x, y, weight }: Points): ((alpha: Fl
     for (let j = 0; j <= i; j++) gramBlock(rest[i]!, rest[j]!, products, size, 3 * (bands + i), 3 * (bands + j))
   const places = Array.from({ length: m }, (_, i) => (i < bands ? 3 * i : 3 * bands + i - bands))
   const slopes = Array.from({ length: n }, (_, a) => 3 * (a >> 1) + 1 + (a & 1))
-  const measured = 3 * bands + exponents.length
+  const measured = [3 * bands + exponents.length]
   const signed = places.map((_, i) => i >= bands && exponents[i - bands] === 0)
-  const pick = (rows: readonly number[], columns: readonly number[]) => {
-    const picked = new Float64Array(rows.length * columns.length)
+  const pick = (rows: readonly number[], columns: readonly number[], into: Float64Array) => {
     let at = 0
-    for (const row of rows) for (const k of columns) picked[at++] = products[row * size + k]!
-    return picked
+    for (const row of rows) for (const k of columns) into[at++] = products[row * size + k]!
   }
+  const solveLinear = nonNegative(m)
+  const right = new Float64Array(m)
+  const halves = new Float64Array(n * m)
 
-  return (alpha) => {
+  return (alpha, spare) => {
     for (let k = 0; k < bands; k++) {
-      const [value, byFirst, bySecond] = groups[k]!
-      fillColumns(components[k]!, alpha[2 * k]!, alpha[2 * k + 1]!, edge, x, weight, { value, byFirst, bySecond })
+      fillColumns(components[k]!, alpha[2 * k]!, alpha[2 * k + 1]!, edge, x, weight, groups[k]!)
       for (let l = 0; l <= k; l++) gramBlock(groups[k]!, groups[l]!, products, size, 3 * k, 3 * l)
       for (let l = 0; l < rest.length; l++) gramBlock(groups[k]!, rest[l]!, products, size, 3 * k, 3 * (bands + l))
     }
-    const phiPhi = pick(places, places)
-    const linear = nonNegative(phiPhi, pick(places, [measured]), signed)
+    const into = spare ?? emptyResult(m, n, count)
+    const { coefficients, gradient, hessian, phiPhi, phiD, dD, residuals } = into
+    pick(places, places, phiPhi)
+    pick(places, measured, right)
+    const linear = solveLinear(phiPhi, right, signed, coefficients)
     if (!linear) return null
-    const { coefficients, active, factor } = linear
-    const residuals = target.slice()
+    const { active, factor } = linear
+    residuals.set(target)
     for (let k = 0; k < linearColumns.length; k++) takeAway(residuals, linearColumns[k]!, coefficients, 3 * k)
     let cost = 0
     for (let i = 0; i < count; i++) cost += residuals[i]! * residuals[i]!
     if (!Number.isFinite(cost)) return null
-    const phiD = pick(places, slopes)
-    const dD = pick(slopes, slopes)
-    const gradient = new Float64Array(n)
-    const hessian = new Float64Array(n * n)
+    pick(places, slopes, phiD)
+    pick(slopes, slopes, dD)
     const held = active.length
-    const halves = new Float64Array(n * held)
     for (let a = 0; a < n; a++) {
       const c = coefficients[a >> 1]!
-      let pull = products[slopes[a]! * size + measured]!
+      let pull = products[slopes[a]! * size + measured[0]!]!
       for (let k = 0; k < held; k++) {
         const crossed = phiD[active[k]! * n + a]!
         halves[a * held + k] = crossed
@@ -187,8 +184,49 @@ export const separable = (recipe: Recipe, { x, y, weight }: Points): ((alpha: Fl
         hessian[a * n + b] = hessian[b * n + a] = c * coefficients[b >> 1]! * schur
       }
     }
-    return { cost: cost / 2, gradient, hessian, coefficients, active, phiPhi, phiD, dD, residuals }
+    into.cost = cost / 2
+    into.active = active
+    return into
   }
+}
+
+type Objective = (alpha: Float64Array, spare?: Separated | null) => Separated | null
+
+const emptyResult = (m: number, n: number, count: number): Separated => ({
+  cost: 0,
+  gradient: new Float64Array(n),
+  hessian: new Float64Array(n * n),
+  coefficients: new Float64Array(m),
+  active: [],
+  phiPhi: new Float64Array(m * m),
+  phiD: new Float64Array(m * n),
+  dD: new Float64Array(n * n),
+  residuals: new Float64Array(count),
+})
+
+/** The columns of a fit, weighted: three of each component, background and measured values in threes, and those that are linear in threes. */
+const columnsOf = (recipe: Recipe, { x, y, weight }: Points) => {
+  const count = x.length
+  const exponents = backgroundExponents(recipe)
+  const origin = scatterOrigin(recipe)
+  // one piece of memory for all columns: many small ones cost as much as the sums
+  const memory = new Float64Array(count * (3 * recipe.components.length + exponents.length + 2))
+  let taken = 0
+  const column = () => {
+    taken += count
+    return memory.subarray(taken - count, taken)
+  }
+  const target = column()
+  for (let i = 0; i < count; i++) target[i] = y[i]! * weight[i]!
+  const groups: readonly Triple[] = recipe.components.map(() => [column(), column(), column()])
+  const fixed = exponents.map((exponent) => {
+    const background = column()
+    for (let i = 0; i < count; i++) background[i] = backgroundAt(exponent, origin, x[i]!) * weight[i]!
+    return background
+  })
+  const empty = column()
+  const linearColumns = inTriples([...groups.map(([value]) => value), ...fixed], empty)
+  return { target, exponents, groups, rest: inTriples([...fixed, target], empty), linearColumns }
 }
 
 /** Filled up with an empty column. */

@@ -12,10 +12,14 @@ export interface Cholesky {
   readonly scale: Float64Array
 }
 
-/** Null where the matrix is not positive definite to `tolerance` (smallest scaled pivot). */
-export const cholesky = (a: Float64Array, n: number, tolerance = 1e-13): Cholesky | null => {
-  const scale = new Float64Array(n)
-  const lower = new Float64Array(n * n)
+/** Room for a decomposition of at most n × n, to be used again and again: in the innermost loop of a fit memory costs more than sums. */
+export const roomFor = (n: number): Room => ({ lower: new Float64Array(n * n), scale: new Float64Array(n) })
+
+type Room = Pick<Cholesky, 'lower' | 'scale'>
+
+/** Null where the matrix is not positive definite to `tolerance` (smallest scaled pivot). Written into `room`. */
+export const cholesky = (a: Float64Array, n: number, tolerance = 1e-13, room = roomFor(n)): Cholesky | null => {
+  const { scale, lower } = room
   for (let i = 0; i < n; i++) {
     const d = a[i * n + i]!
     if (!(d > 0) || !Number.isFinite(d)) return null
@@ -44,8 +48,14 @@ export const forward = ({ n, lower, scale }: Cholesky, b: Float64Array, from = 0
 
 /** A⁻¹ b */
 export const solve = (factor: Cholesky, b: Float64Array): Float64Array => {
+  const x = b.slice(0, factor.n)
+  solveInPlace(factor, x)
+  return x
+}
+
+/** A⁻¹ b in place of b. */
+export const solveInPlace = (factor: Cholesky, x: Float64Array): void => {
   const { n, lower, scale } = factor
-  const x = b.slice()
   forward(factor, x)
   for (let i = n - 1; i >= 0; i--) {
     let sum = x[i]!
@@ -53,7 +63,6 @@ export const solve = (factor: Cholesky, b: Float64Array): Float64Array => {
     x[i] = sum / lower[i * n + i]!
   }
   for (let i = 0; i < n; i++) x[i] = x[i]! * scale[i]!
-  return x
 }
 
 /** A⁻¹, row-major. */
@@ -69,20 +78,27 @@ export const inverse = (factor: Cholesky): Float64Array => {
   return result
 }
 
-/** The entries `keep` of a vector. */
-export const gathered = (values: Float64Array, keep: readonly number[]): Float64Array => {
-  const result = new Float64Array(keep.length)
-  for (let i = 0; i < keep.length; i++) result[i] = values[keep[i]!]!
-  return result
+/** The entries `keep` of a vector, at the start of `into`. */
+export const gathered = (
+  values: Float64Array,
+  keep: readonly number[],
+  into = new Float64Array(keep.length),
+): Float64Array => {
+  for (let i = 0; i < keep.length; i++) into[i] = values[keep[i]!]!
+  return into
 }
 
-/** The rows and columns `keep` of an n × n matrix. */
-export const submatrix = (a: Float64Array, n: number, keep: readonly number[]): Float64Array => {
+/** The rows and columns `keep` of an n × n matrix, at the start of `into`. */
+export const submatrix = (
+  a: Float64Array,
+  n: number,
+  keep: readonly number[],
+  into = new Float64Array(keep.length ** 2),
+): Float64Array => {
   const m = keep.length
-  const result = new Float64Array(m * m)
   for (let i = 0; i < m; i++) {
     const row = keep[i]! * n
-    for (let j = 0; j < m; j++) result[i * m + j] = a[row + keep[j]!]!
+    for (let j = 0; j < m; j++) into[i * m + j] = a[row + keep[j]!]!
   }
-  return result
+  return into
 }
