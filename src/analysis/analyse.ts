@@ -53,7 +53,12 @@ export const lockRecipe = (
   const bands = context.bands ?? expectedInside(spectra, context)
   const choice = chooseRecipe(spectra, {
     ...(bands === null ? {} : { bands }),
-    hints: context.expected.map(({ nearPerCm, withinPerCm }) => ({ positionPerCm: nearPerCm, withinPerCm })),
+    hints: context.expected.map(({ nearPerCm, withinPerCm, shape, narrow }) => ({
+      positionPerCm: nearPerCm,
+      withinPerCm,
+      shape,
+      narrow,
+    })),
   })
   if (choice.kind === 'none') return choice
   const { recipe, admissible } = choice
@@ -64,11 +69,11 @@ export const lockRecipe = (
   return { recipe, admissible, ...assigned }
 }
 
-/** How many of the species' bands the spectra can show; null where nothing is expected. */
+/** How many of the species' broad bands the spectra can show; null where nothing is expected. */
 const expectedInside = (spectra: readonly Spectrum[], { expected }: AnalysisContext): number | null => {
   const low = Math.max(...spectra.map(({ wavenumberPerCm }) => wavenumberPerCm[0]!))
   const high = Math.min(...spectra.map(({ wavenumberPerCm }) => wavenumberPerCm.at(-1)!))
-  const inside = expected.filter(({ nearPerCm }) => nearPerCm > low && nearPerCm < high).length
+  const inside = expected.filter(({ nearPerCm, narrow }) => !narrow && nearPerCm > low && nearPerCm < high).length
   return inside === 0 ? null : inside
 }
 

@@ -25,14 +25,26 @@ export const RICH_BACKGROUND = BACKGROUNDS[1]!
 /** Tried with the bands that describe the spectra best: scatter of particles no longer small beside the wavelength. */
 export const OTHER_BACKGROUNDS: typeof BACKGROUNDS = [[{ kind: 'constant' }, { kind: 'scatter', exponent: 2 }]]
 
-const nameOf = (bands: number, flank: boolean, background: readonly BackgroundTerm[]): string =>
+export const recipeName = (components: readonly RecipeComponent[], background: readonly BackgroundTerm[]): string =>
   [
-    `${bands} gaussian`,
-    ...(flank ? ['flank'] : []),
+    ...bandsInWords(components.filter(({ kind }) => kind === 'band')),
+    ...(components.some(({ kind }) => kind === 'flank') ? ['flank'] : []),
     ...background.map((term) =>
       term.kind === 'constant' ? 'constant' : term.exponent === 4 ? 'scatter' : `scatter^${term.exponent}`,
     ),
   ].join(' + ')
+
+const SHAPES = ['gaussian', 'log-normal', 'pseudo-voigt', 'progression'] as const
+
+const bandsInWords = (bands: readonly RecipeComponent[]): readonly string[] => {
+  const counts = SHAPES.map((name) => ({
+    name,
+    count: bands.filter(({ shape, narrow }) => !narrow && shape.kind === name).length,
+  }))
+  const narrow = bands.filter((band) => band.narrow).length
+  const words = [...counts, { name: 'narrow', count: narrow }].filter(({ count }) => count > 0)
+  return words.length > 0 ? words.map(({ name, count }) => `${count} ${name}`) : ['0 gaussian']
+}
 
 const bandComponents = (places: readonly Place[], share: number): readonly RecipeComponent[] => {
   const sorted = places.toSorted((a, b) => a.positionPerCm - b.positionPerCm)
@@ -95,9 +107,10 @@ export const makeRecipe = (
     positionBoundsPerCm: [edge + FLANK.near, edge + FLANK.far],
     widthBoundsPerCm: [FLANK.narrowest, FLANK.widest],
   }
+  const components = [...bandComponents(places, SHARE_OF_GAP[bounds]), ...(flank ? [tail] : [])]
   return {
-    name: nameOf(places.length, flank !== false, background),
-    components: [...bandComponents(places, SHARE_OF_GAP[bounds]), ...(flank ? [tail] : [])],
+    name: recipeName(components, background),
+    components,
     background,
     windowPerCm,
   }

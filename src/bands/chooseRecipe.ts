@@ -17,6 +17,7 @@ import { showsBand } from './fitBands.ts'
 import { bestOf, isSeen, judged, type Scored, score } from './judge.ts'
 import { findMisfit } from './misfit.ts'
 import { farthest } from './modelSpread.ts'
+import { besideNarrow, withComponent, withNarrow } from './narrow.ts'
 import { disorder, joinNeighbours, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
 import { rivalsOf } from './rivals.ts'
 import {
@@ -36,6 +37,7 @@ import {
   type Tail,
 } from './search.ts'
 import { subsets } from './seeds.ts'
+import { shaped } from './shaping.ts'
 import { FIRST_LOOK, ROUGH } from './solveRecipe.ts'
 import type { BandHint, ChooseRecipe, Recipe, RecipeChoice } from './types.ts'
 
@@ -81,7 +83,35 @@ export const chooseRecipe: ChooseRecipe = (spectra, options) => {
   const full = spectra.map((spectrum) => selectPoints(spectrum, windowPerCm, 0))
   if (full.some(({ x }) => x.length < 20)) return none(spectra, 'A spectrum has fewer than 20 points that can be used.')
   if (full.some(({ spread }) => !(spread > 0))) return none(spectra, 'A spectrum is a flat line.')
-  return choose(spectra, full, windowPerCm, options.hints ?? [], options.bands)
+  const hints = options.hints ?? []
+  const narrow = hints.filter((hint) => hint.narrow)
+  const broad = full.map((points) => besideNarrow(points, narrow))
+  const choice = choose(
+    spectra,
+    broad,
+    windowPerCm,
+    hints.filter((hint) => !hint.narrow),
+    options.bands,
+  )
+  return choice.kind === 'chosen' ? finished(choice, full, hints, narrow) : choice
+}
+
+/** What the search for broad bands does not tell: the shapes that the species asks for, and narrow features. */
+const finished = (
+  { recipe, admissible }: Extract<RecipeChoice, { kind: 'chosen' }>,
+  points: readonly Selection[],
+  hints: readonly BandHint[],
+  narrow: readonly BandHint[],
+): RecipeChoice => {
+  const joined = points.map((selection) => joinNeighbours(selection, 0, JOINED))
+  const broad = shaped(recipe, hints, recipe.misfit === undefined ? joined : points)
+  const whole = withNarrow(broad, narrow, points)
+  if (whole === recipe) return { kind: 'chosen', recipe, admissible }
+  const features = whole.components.filter((component) => component.narrow)
+  const completed = (one: Recipe) => weighted(features.reduce(withComponent, one), points)
+  const others = admissible.filter((other) => other !== recipe)
+  const own = weighted(whole, points)
+  return { kind: 'chosen', recipe: own, admissible: [own, ...others.map(completed)] }
 }
 
 const choose = (
@@ -202,8 +232,9 @@ const suggestions = (
 }
 
 /** The recipe with its places as found, and the misfit it has. */
-const settle = (trial: Found, points: readonly Selection[]): Recipe => {
-  const settled = started(trial, 'locked')
-  const misfit = findMisfit(settled, points)
-  return misfit > 0 ? { ...settled, misfit } : settled
+const settle = (trial: Found, points: readonly Selection[]): Recipe => weighted(started(trial, 'locked'), points)
+
+const weighted = ({ misfit: _, ...recipe }: Recipe, points: readonly Selection[]): Recipe => {
+  const misfit = findMisfit(recipe, points)
+  return misfit > 0 ? { ...recipe, misfit } : recipe
 }

@@ -44,7 +44,7 @@ const fillBand = (
   columns: Columns,
 ): void => {
   if (shape.kind === 'gaussian') fillGaussian(position, width, x, weight, columns)
-  else if (shape.kind === 'skewed') fillSkewed(shape.skew, position, width, x, weight, columns)
+  else if (shape.kind === 'log-normal') fillSkewed(shape.skew, position, width, x, weight, columns)
   else if (shape.kind === 'pseudo-voigt') fillPseudoVoigt(shape.lorentz, position, width, x, weight, columns)
   else fillProgression(shape, position, width, x, weight, columns)
 }

@@ -6,6 +6,8 @@ import type { Recipe } from './types.ts'
 
 /** Points to which a spectrum is joined for the fits of other recipes. */
 const JOINED = 240
+/** As many at least over the narrowest width. */
+const OVER_A_WIDTH = 5
 /** Distance within which a rival's band is the same band, in widths. */
 const SAME_BAND = 0.5
 
@@ -85,7 +87,10 @@ const isSame = (one: Recipe, other: Recipe): boolean =>
 
 /** Where the bands of a recipe come to rest; null for a flank and a band without height. */
 const placesUnder = (recipe: Recipe, points: Selection): readonly (Place | null)[] => {
-  const solution = solveRecipe(recipe, joinNeighbours(points, recipe.misfit ?? 0, JOINED), ROUGH)
+  const [from, to] = recipe.windowPerCm
+  const narrowest = Math.min(...recipe.components.map(({ widthPerCm }) => widthPerCm))
+  const most = Math.max(JOINED, (OVER_A_WIDTH * (to - from)) / narrowest)
+  const solution = solveRecipe(recipe, joinNeighbours(points, recipe.misfit ?? 0, most), ROUGH)
   return recipe.components.map(({ kind }, k) =>
     solution && kind === 'band' && solution.at.coefficients[k]! > 0
       ? { positionPerCm: solution.parameters[2 * k]!, widthPerCm: solution.parameters[2 * k + 1]! }

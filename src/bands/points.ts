@@ -58,6 +58,12 @@ const weigh = (x: Float64Array, y: Float64Array, noise: Float64Array, misfit: nu
   return { x, y, noise, spread, weight }
 }
 
+/** Without the points of a stretch, cm⁻¹. */
+export const withoutStretch = ({ x, y, noise }: Selection, [from, to]: readonly [number, number]): Selection => {
+  const isLeft = (_: number, i: number) => x[i]! < from || x[i]! > to
+  return weigh(x.filter(isLeft), y.filter(isLeft), noise.filter(isLeft), 0)
+}
+
 /** The same points under another misfit. */
 export const reweigh = ({ x, y, noise }: Selection, misfit: number): Selection => weigh(x, y, noise, misfit)
 

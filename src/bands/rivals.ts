@@ -2,7 +2,7 @@
  * Recipes that describe the spectra otherwise than the chosen one: what no criterion may choose, but what tells how far the
  * positions depend on the shape of bands and background.
  */
-import { flankStart, makeRecipe } from './candidates.ts'
+import { flankStart, makeRecipe, recipeName } from './candidates.ts'
 import type { Selection } from './points.ts'
 import { bandPlaces, closer, type Found, missingBands, searching, started, tailOf } from './search.ts'
 import { ROUGH, solveRecipe } from './solveRecipe.ts'
@@ -30,14 +30,9 @@ const skewedRivals = (best: Found, points: readonly Selection[]): readonly Found
 
 const withSkew = (recipe: Recipe, k: number, skew: number): Recipe => {
   const components = recipe.components.map((component, i) =>
-    i === k ? { ...component, shape: { kind: 'skewed' as const, skew } } : component,
+    i === k ? { ...component, shape: { kind: 'log-normal' as const, skew } } : component,
   )
-  const skewed = components.filter(({ shape }) => shape.kind === 'skewed').length
-  const name = recipe.name.replace(/^\d+ gaussian( \+ \d+ skewed)?/, (_all) => {
-    const bands = components.filter(({ kind }) => kind === 'band').length
-    return `${bands - skewed} gaussian + ${skewed} skewed`
-  })
-  return { ...recipe, components, name }
+  return { ...recipe, components, name: recipeName(components, recipe.background) }
 }
 
 const solved = (recipe: Recipe, points: readonly Selection[]): Found | null => {

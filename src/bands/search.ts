@@ -141,9 +141,9 @@ export const started = (trial: Found, bounds: 'search' | 'locked' = 'search'): R
     trial.recipe.windowPerCm,
     bounds,
   )
-  const components = recipe.components.map((component, k) => {
-    const { shape } = trial.recipe.components[k]!
-    return { ...component, shape }
-  })
+  const components = recipe.components.map((component, k) => ({
+    ...component,
+    shape: trial.recipe.components[k]!.shape,
+  }))
   return { ...recipe, name: trial.recipe.name, components }
 }

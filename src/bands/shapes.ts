@@ -3,7 +3,7 @@
  * Lorentzian share, vibrational quantum) is part of the recipe and held.
  *
  * gaussian     φ(x) = exp(−4 ln2 u²), u = (x − p)/w; parameters p (centre) and w (full width at half maximum), cm⁻¹
- * skewed       φ(x) = exp(−ln2 (ln(1 + 2 b u)/b)²), 0 where 1 + 2 b u ≤ 0, with the asymmetry b held (Fraser & Suzuki, Anal. Chem. 41
+ * log-normal   φ(x) = exp(−ln2 (ln(1 + 2 b u)/b)²), 0 where 1 + 2 b u ≤ 0, with the asymmetry b held (Fraser & Suzuki, Anal. Chem. 41
  *              (1969) 37, from memory); maximum at p, full width at half maximum w sinh(b)/b; b → 0 is the Gaussian
  * pseudo-voigt φ(x) = (1 − η) exp(−4 ln2 u²) + η/(1 + 4 u²), η the Lorentzian share; both parts have the width w (Wertheim,
  *              Butler, West & Buchanan, Rev. Sci. Instrum. 45 (1974) 1369, from memory)
@@ -73,7 +73,7 @@ export const bandAt = (shape: BandShape, positionPerCm: number, widthPerCm: numb
   switch (shape.kind) {
     case 'gaussian':
       return Math.exp(-FOUR_LN2 * u * u)
-    case 'skewed': {
+    case 'log-normal': {
       const argument = 1 + 2 * shape.skew * u
       return argument > 0 ? Math.exp(-Math.LN2 * (Math.log(argument) / shape.skew) ** 2) : 0
     }
@@ -98,7 +98,7 @@ type CurveOf = Pick<FittedComponent, 'shape' | 'positionPerCm' | 'widthPerCm' | 
 
 /** The width w in a shape's formula, of a band with this full width at half maximum. */
 const lineWidth = (shape: BandShape, fullPerCm: number): number => {
-  if (shape.kind === 'skewed') return (fullPerCm * shape.skew) / Math.sinh(shape.skew)
+  if (shape.kind === 'log-normal') return (fullPerCm * shape.skew) / Math.sinh(shape.skew)
   if (shape.kind !== 'progression') return fullPerCm
   let low = fullPerCm / 50
   let high = fullPerCm
@@ -148,7 +148,7 @@ export const figuresOf = (
     const widthSlope = (envelope(shape, second * 1.01).widthPerCm - widthPerCm) / (0.01 * second)
     return { positionPerCm: first, widthPerCm, widthSlope, heightRatio: height }
   }
-  const ratio = shape.kind === 'skewed' ? Math.sinh(shape.skew) / shape.skew : 1
+  const ratio = shape.kind === 'log-normal' ? Math.sinh(shape.skew) / shape.skew : 1
   return { positionPerCm: first, widthPerCm: second * ratio, widthSlope: ratio, heightRatio: 1 }
 }
 

@@ -5,7 +5,7 @@ import type { Flag, Spectrum } from '../spectrum/types.ts'
  * sample's reference spectra, then locked: only spectra of one recipe are compared.
  */
 export interface Recipe {
-  /** `2 gaussian + constant + scatter` */
+  /** `2 gaussian + 1 narrow + constant + scatter` */
   readonly name: string
   /** Ascending in position. */
   readonly components: readonly RecipeComponent[]
@@ -23,7 +23,7 @@ export interface Recipe {
 export type BandShape =
   | { readonly kind: 'gaussian' }
   /** Log-normal; asymmetry b, positive: the blue wing is the longer. */
-  | { readonly kind: 'skewed'; readonly skew: number }
+  | { readonly kind: 'log-normal'; readonly skew: number }
   /** Share of the Lorentzian part, 0 to 1. */
   | { readonly kind: 'pseudo-voigt'; readonly lorentz: number }
   /** Vibrational lines `quantumPerCm` apart with Poisson's weights about the mean number `huangRhys`. */
@@ -31,6 +31,8 @@ export type BandShape =
 
 export interface RecipeComponent {
   readonly shape: BandShape
+  /** A narrow feature on broad bands, see narrow.ts. */
+  readonly narrow?: true
   /** `band`: a d–d band; `flank`: a charge-transfer band whose centre may lie beyond the window. */
   readonly kind: 'band' | 'flank'
   /** Where the search starts and how far it may go. cm⁻¹ */
@@ -48,6 +50,9 @@ export type BackgroundTerm = { readonly kind: 'constant' } | { readonly kind: 's
 export interface BandHint {
   readonly positionPerCm: number
   readonly withinPerCm: number
+  readonly shape?: BandShape['kind']
+  /** A spin-forbidden feature narrower than any allowed band. */
+  readonly narrow?: boolean
 }
 
 export interface RecipeOptions {

@@ -67,8 +67,8 @@ const sayStudy = (config: Config, study: Study): readonly string[] => {
 
 const saySpecies = (species: Species): string => {
   const bands = species.bands.map(
-    ({ role, nearPerCm, withinPerCm }) =>
-      `${role} near ${Math.round(nearPerCm)} ± ${Math.round(withinPerCm)} cm^-1 (${nmOfWavenumber(nearPerCm, 'air').toFixed(1)} nm)`,
+    ({ role, nearPerCm, withinPerCm, shape, narrow }) =>
+      `${role} near ${Math.round(nearPerCm)} ± ${Math.round(withinPerCm)} cm^-1 (${nmOfWavenumber(nearPerCm, 'air').toFixed(1)} nm)${shape === 'gaussian' ? '' : `, ${shape}`}${narrow ? ', narrow' : ''}`,
   )
   const spin = species.spin === null ? '' : ` ${species.spin}-spin`
   return `${species.title}, ${species.geometry}${spin} ${species.ion}: ${bands.length === 0 ? 'no bands expected' : bands.join(', ')}`

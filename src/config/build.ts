@@ -77,8 +77,10 @@ export const toSpecies = (file: SpeciesFile): Species => {
     spin: spinOf(file),
     state: file.state,
     ligands: file.ligands,
-    bands: file.bands.map(({ role, near, within }) => ({
+    bands: file.bands.map(({ role, near, within, shape, narrow }) => ({
       role,
+      shape,
+      narrow,
       nearPerCm: positionPerCm(near),
       withinPerCm: halfWidthPerCm(near, within) ?? positionPerCm(near),
     })),

@@ -1,3 +1,4 @@
+import type { BandShape } from '../bands/types.ts'
 import type { Place } from '../fault.ts'
 import type { Geometry, Spin } from '../ligandField/types.ts'
 import type { AxisUnit, Medium, OrdinateKind, ReadingHints } from '../readers/types.ts'
@@ -60,6 +61,9 @@ export interface ExpectedBand {
   /** Vacuum wavenumber, cm⁻¹ (wavelengths are converted as in air). */
   readonly nearPerCm: number
   readonly withinPerCm: number
+  readonly shape: BandShape['kind']
+  /** A narrow spin-forbidden feature on broad bands. */
+  readonly narrow: boolean
 }
 
 export interface Species {

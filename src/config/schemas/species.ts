@@ -26,7 +26,19 @@ export const speciesSchema = z.strictObject({
   state: word(['solution', 'solid']).prefault('solution'),
   ligands: ligands(),
   bands: z
-    .array(z.strictObject({ role: role(), near: spectral(), within: spectral() }))
+    .array(
+      z.strictObject({
+        role: role(),
+        near: spectral(),
+        within: spectral(),
+        shape: word(['gaussian', 'log-normal', 'pseudo-voigt', 'progression'])
+          .prefault('gaussian')
+          .describe(
+            'Shape in wavenumber; what it holds besides position and width is found on the reference and locked',
+          ),
+        narrow: z.boolean().prefault(false).describe('A spin-forbidden feature, narrower than an allowed band'),
+      }),
+    )
     .prefault([])
     .describe('Where bands are expected; nm are read as measured in air'),
   'may-become': z
