@@ -1,4 +1,5 @@
 export { type AnalysisOutcome, analyse, lockRecipe, unprepared } from './analyse.ts'
 export { type FileFacts, type Identity, identify, identifyAlone } from './identify.ts'
 export { analysisJson } from './json.ts'
+export { type Mixture, mixtureOf, type Share } from './mixture.ts'
 export { type Measured, quantitiesOf } from './quantities.ts'

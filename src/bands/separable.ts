@@ -46,7 +46,7 @@ interface Linear {
  * Least squares with some coefficients ≥ 0 (Lawson & Hanson 1974, ch. 23, by dropping from the full set and letting back in). A solver
  * for m coefficients, which are written into its last argument.
  */
-const nonNegative = (m: number) => {
+export const nonNegative = (m: number) => {
   const room = roomFor(m)
   const part = new Float64Array(m * m)
   const solution = new Float64Array(m)

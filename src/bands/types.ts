@@ -127,3 +127,41 @@ export type BandFit =
 /** Enters of the room, see index.ts. */
 export type ChooseRecipe = (spectra: readonly Spectrum[], options: RecipeOptions) => RecipeChoice
 export type FitBands = (spectrum: Spectrum, recipe: Recipe, admissible: readonly Recipe[]) => BandFit
+
+/** A band that all spectra of a common fit share. cm⁻¹, k = 1; null where held at a bound. */
+export interface SharedBand {
+  readonly shape: BandShape
+  readonly positionPerCm: number
+  readonly uPositionPerCm: number | null
+  /** The width w of shapes.ts. */
+  readonly widthPerCm: number
+  readonly uWidthPerCm: number | null
+  /** Height over that of the first band of its species. */
+  readonly ratio: number
+}
+
+/** What one spectrum of a common fit has of each species, in units of its first band's height. */
+export interface Amounts {
+  readonly amounts: readonly number[]
+  /** Given the shared bands. */
+  readonly uAmounts: readonly number[]
+  readonly constant: number
+  /** Scatter at the middle of the points, absorbance. */
+  readonly scatter: number
+  /** Root mean square of the residuals, absorbance. */
+  readonly rms: number
+}
+
+export type CommonFit =
+  | {
+      readonly kind: 'fitted'
+      readonly species: readonly (readonly SharedBand[])[]
+      /** In the order of the spectra. */
+      readonly spectra: readonly Amounts[]
+      /** Share of the spread of the absorbance by which the model misses the spectra beyond their noise. */
+      readonly misfit: number
+      readonly reducedChi2: number
+      readonly iterations: number
+      readonly stopped: 'relative change' | 'gradient' | 'step' | 'iterations'
+    }
+  | { readonly kind: 'unfitted'; readonly why: string }

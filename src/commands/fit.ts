@@ -1,4 +1,4 @@
-import { readFileSync, statSync, writeFileSync } from 'node:fs'
+import { statSync, writeFileSync } from 'node:fs'
 import { basename } from 'node:path'
 import { type Command, Option } from 'commander'
 import { analyse, analysisJson, identify, identifyAlone } from '../analysis/index.ts'
@@ -6,13 +6,13 @@ import type { Analysis, AnalysisContext } from '../analysis/types.ts'
 import { findIon } from '../chemistry/ions.ts'
 import type { Instrument, Species } from '../config/types.ts'
 import { roomOf } from '../daemon/room.ts'
-import { EXIT, type Fault, FaultError, sayFault } from '../fault.ts'
+import { EXIT, type Fault, FaultError } from '../fault.ts'
 import type { Geometry, Ion, Spin } from '../ligandField/types.ts'
 import { spectrumPicture } from '../pictures/spectrum.ts'
-import { readSpectra } from '../readers/index.ts'
 import type { RawSpectrum } from '../readers/types.ts'
 import { fitText } from './fitText.ts'
 import { exitWith, printJson, printLine, usageFault } from './print.ts'
+import { exitOf, isoTime, spectraOf } from './spectrumFiles.ts'
 
 interface Options {
   readonly ion?: string
@@ -83,43 +83,13 @@ const fitFiles = (files: readonly string[], options: Options): void => {
   if (fits.length === 0) exitWith(EXIT.unreadable)
 }
 
-const exitOf = (faults: readonly Fault[]) =>
-  faults.some(({ code }) => code === 'no-such-file') ? EXIT.noInput : EXIT.unreadable
-
-/** ISO 8601 in UTC, without fractions of a second that nobody wrote. */
-const isoTime = (ms: number): string => new Date(ms).toISOString().replace('.000Z', 'Z')
-
 const fitFile = (file: string, { context, instrument }: Setting, faults: Fault[]) => {
-  const bytes = bytesOf(file, faults)
-  if (bytes === null) return []
-  const reading = readSpectra(bytes, file, instrument?.reading ?? {})
-  if (reading.kind === 'refused') faults.push(...reading.faults)
-  const warnings = [
-    ...(reading.kind === 'read' ? reading.warnings : []),
-    ...reading.spectra.flatMap((raw) => raw.warnings),
-  ]
-  for (const warning of warnings) process.stderr.write(`${sayFault(warning)}\n`)
-  return reading.spectra.flatMap((raw) => {
+  return spectraOf(file, instrument?.reading ?? {}, faults).flatMap((raw) => {
     const outcome = analyse(raw, context, null)
     if (outcome.kind === 'analysed') return [{ name: file, raw, analysis: outcome.analysis }]
     faults.push(...outcome.faults)
     return []
   })
-}
-
-const bytesOf = (file: string, faults: Fault[]): Uint8Array | null => {
-  try {
-    return readFileSync(file)
-  } catch (error) {
-    const missing = (error as { code?: string }).code === 'ENOENT'
-    faults.push({
-      code: missing ? 'no-such-file' : 'unreadable-file',
-      place: { at: file },
-      what: missing ? 'there is no such file' : (error as Error).message,
-      remedy: missing ? 'see the name and the folder' : 'see that it is a file and may be read',
-    })
-    return null
-  }
 }
 
 const whose = (file: string, raw: RawSpectrum, { instrument, timeZone }: Setting) => {

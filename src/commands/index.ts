@@ -12,6 +12,7 @@ const COMMANDS: Readonly<Record<string, () => Promise<AddCommand>>> = {
   check: async () => (await import('./check.ts')).addCheck,
   inspect: async () => (await import('./inspect.ts')).addInspect,
   fit: async () => (await import('./fit.ts')).addFit,
+  mixture: async () => (await import('./mixture.ts')).addMixture,
   levels: async () => (await import('./levels.ts')).addLevels,
   history: async () => (await import('./history.ts')).addHistory,
   alarms: async () => (await import('./alarms.ts')).addAlarms,
