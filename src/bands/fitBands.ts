@@ -3,6 +3,7 @@ import type { Flag, Spectrum } from '../spectrum/types.ts'
 import { type CurveMaximum, curveMaximum } from './maxima.ts'
 import { modelSpreads } from './modelSpread.ts'
 import { disorder, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
+import { qualityOf } from './quality.ts'
 import { figuresOf } from './shapes.ts'
 import { type Solution, solveRecipe } from './solveRecipe.ts'
 import { rmsOf, standing } from './standing.ts'
@@ -99,6 +100,7 @@ const fitted = (
     rms: rmsOf(solution, points),
     noise: points.noise.toSorted()[n >> 1]!,
     reducedChi2: overNoise / freedom,
+    quality: qualityOf(recipe, points, solution, uncertainty, all),
     points: n,
     windowPerCm: [points.x[0]!, points.x[n - 1]!],
     iterations: solution.iterations,

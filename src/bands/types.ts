@@ -89,6 +89,23 @@ export interface FittedComponent {
   readonly uHeight: number | null
 }
 
+export interface FitQuality {
+  /** Height of the highest band over the median noise. */
+  readonly signalToNoise: number
+  /** Normal deviate of the number of runs of signs of the residuals; far below 0: what is left is structure. */
+  readonly runsZ: number
+  /** Points over the correlation time of the residuals. */
+  readonly effectivePoints: number
+  /** Of the Gram matrix scaled to a unit diagonal, by the row sums of it and its inverse; null where it is singular. */
+  readonly condition: number | null
+  /** What ended at a bound, in words. */
+  readonly boundsHit: readonly string[]
+  /** The recipe's misfit, a share of the spread of the absorbance; 0 where it reaches the noise. */
+  readonly lackOfFit: number
+  /** One sentence for a chemist. */
+  readonly verdict: string
+}
+
 export interface FittedBackground {
   readonly constant: number
   /** Scatter at the middle of the window, absorbance. */
@@ -110,6 +127,7 @@ export type BandFit =
       /** Median of the noise over the points used, absorbance. */
       readonly noise: number
       readonly reducedChi2: number
+      readonly quality: FitQuality
       readonly points: number
       readonly windowPerCm: readonly [number, number]
       readonly iterations: number

@@ -21,6 +21,8 @@ export interface Uncertainty {
   readonly effectivePoints: number
   /** Number of parameters not held. */
   readonly fitted: number
+  /** Condition of the Gram matrix scaled to a unit diagonal, by row sums. */
+  readonly condition: number
 }
 
 /** τ ≥ 1 of a sequence of residuals in order of the axis. */
@@ -45,7 +47,8 @@ export const correlationTime = (residuals: Float64Array): number => {
 export const uncertaintyOf = (recipe: Recipe, solution: Solution): Uncertainty | null => {
   const { at } = solution
   const places = placesIn(recipe, solution)
-  const factor = cholesky(gramOf(at, at, places), places.size)
+  const gram = gramOf(at, at, places)
+  const factor = cholesky(gram, places.size)
   const points = at.residuals.length
   if (!factor || points <= places.size) return null
   const tau = correlationTime(at.residuals)
@@ -55,6 +58,7 @@ export const uncertaintyOf = (recipe: Recipe, solution: Solution): Uncertainty |
     places,
     covariance.map((value) => value * scale),
     points / tau,
+    conditionOf(gram, covariance, places.size),
   )
 }
 
@@ -92,6 +96,7 @@ export const repeatabilityOf = (
     places,
     covariance.map((value) => value * scale),
     fast.length / tau,
+    asIfScatter.condition,
   )
 }
 
@@ -161,10 +166,29 @@ const gramOf = (of: Separated, { coefficients }: Separated, { active, free, size
   return matrix
 }
 
+/** ‖S A S‖·‖(S A S)⁻¹‖ in the norm of row sums, S scaling A to a unit diagonal. */
+const conditionOf = (gram: Float64Array, inverted: Float64Array, size: number): number => {
+  const largest = (entry: (r: number, s: number) => number) => {
+    let most = 0
+    for (let r = 0; r < size; r++) {
+      let sum = 0
+      for (let s = 0; s < size; s++) sum += Math.abs(entry(r, s))
+      most = Math.max(most, sum)
+    }
+    return most
+  }
+  const scale = (i: number) => Math.sqrt(gram[i * size + i]!)
+  return (
+    largest((r, s) => gram[r * size + s]! / (scale(r) * scale(s))) *
+    largest((r, s) => inverted[r * size + s]! * scale(r) * scale(s))
+  )
+}
+
 const uncertaintyFrom = (
   { active, free, size }: Places,
   covariance: Float64Array,
   effectivePoints: number,
+  condition: number,
 ): Uncertainty => {
   const entry = (r: number, s: number) => (r < 0 || s < 0 ? null : covariance[r * size + s]!)
   const place = (i: number) => {
@@ -176,5 +200,6 @@ const uncertaintyFrom = (
     ofCoefficient: (i) => entry(active.indexOf(i), active.indexOf(i)),
     effectivePoints,
     fitted: size,
+    condition,
   }
 }

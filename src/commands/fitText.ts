@@ -32,6 +32,7 @@ export const fitText = (row: FitRow): string => {
     fit === null
       ? []
       : [
+          `  ${fit.verdict}`,
           `  fit: ${fit.recipe}; rms ${fit.rms}, noise ${fit.noise}, reduced χ² ${fit.reduced_chi2}; ${fit.iterations} iterations, stopped by ${fit.stopped}`,
         ]
   const flags = row.flags.length === 0 ? [] : [`  flags: ${row.flags.join(', ')}`]
