@@ -22,6 +22,7 @@ const COMMANDS: Readonly<Record<string, () => Promise<AddCommand>>> = {
   'approve-reference': async () => (await import('./approveReference.ts')).addApproveReference,
   'out-of-service': async () => (await import('./outOfService.ts')).addOutOfService,
   'return-to-service': async () => (await import('./returnToService.ts')).addReturnToService,
+  reanalyse: async () => (await import('./reanalyse.ts')).addReanalyse,
   rehearse: async () => (await import('./rehearse.ts')).addRehearse,
   status: async () => (await import('./status.ts')).addStatus,
   demo: async () => (await import('./demo.ts')).addDemo,

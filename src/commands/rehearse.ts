@@ -10,6 +10,7 @@ import { type Injection, parseInjection } from '../rehearsal/injection.ts'
 import { openStoreReadOnly } from '../store/index.ts'
 import { usageFault } from './print.ts'
 import { printable } from './printable.ts'
+import { progressLine } from './progressLine.ts'
 import { historyOn } from './rehearseHistory.ts'
 import { printRehearsalJson } from './rehearseJson.ts'
 import { type Rehearsal, type RuleSet, runRehearsal } from './rehearseRun.ts'
@@ -150,25 +151,5 @@ const refuseNothing = ({ sample, inject }: Options, { samples, unclaimed, inject
   if (inject !== undefined && samples.length > 0 && injected.length === 0) {
     const whys = [...new Set(skipped.map(({ why }) => why))].join('; ')
     throw usageFault('--inject', `into no sample: ${whys}`, `another ligand, or a longer history, as for "${EXAMPLE}"`)
-  }
-}
-
-/** One line on stderr that is written over, only where a person looks. */
-const progressLine = () => {
-  const { stderr } = process
-  let last = 0
-  let shown = false
-  return {
-    show: (what: string): void => {
-      const now = performance.now()
-      if (!stderr.isTTY || now - last < 100) return
-      last = now
-      shown = true
-      stderr.write(`\r\x1b[2K${printable(what)}`)
-    },
-    clear: (): void => {
-      if (shown) stderr.write('\r\x1b[2K')
-      shown = false
-    },
   }
 }

@@ -1,3 +1,4 @@
+import { ENGINE } from '../analysis/types.ts'
 import { decisions } from '../store/decisions.ts'
 import { type Db, whoHolds } from '../store/index.ts'
 
@@ -101,6 +102,7 @@ export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
       ...(letters.failed > 0
         ? [`${count(letters.failed, 'letter was', 'letters were')} given up: ${letters.last_error}`]
         : []),
+      ...outdated(db),
     ],
     daemon,
     spectra: counts.spectra,
@@ -115,6 +117,23 @@ export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
     gathering: gathering(db),
     unknown_samples: unknownSamples(db),
   }
+}
+
+/** Samples whose oldest spectrum was last analysed by another engine: windows and references leave such spectra out. */
+const outdated = (db: Db): readonly string[] => {
+  const { samples } = db
+    .prepare<[string], { samples: number }>(
+      `SELECT count(*) AS samples
+         FROM (SELECT min(id) AS id FROM spectrum_now WHERE sample IS NOT NULL GROUP BY sample, instrument) oldest
+         JOIN analysis a ON a.id = (SELECT max(id) FROM analysis WHERE spectrum = oldest.id)
+        WHERE a.engine <> ?`,
+    )
+    .get(ENGINE)!
+  return samples === 0
+    ? []
+    : [
+        `${count(samples, 'sample has', 'samples have')} spectra that an earlier engine analysed, which no rule compares with newer ones: tendq reanalyse --all --keep-recipe`,
+      ]
 }
 
 const count = (n: number, one: string, many: string): string => `${n} ${n === 1 ? one : many}`

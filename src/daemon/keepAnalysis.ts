@@ -12,7 +12,7 @@ export const keepAnalysis = (
   { study, species }: Subject,
   analysis: Analysis,
   recipe: string | null,
-  { store, now, room }: Stations,
+  { store, now, room }: Pick<Stations, 'store' | 'now' | 'room'>,
 ): void => {
   const pathMm = raw.pathMm ?? study.pathMm ?? USUAL_PATH_MM
   const quantities = quantitiesOf(analysis, pathMm)

@@ -12,8 +12,10 @@ import type { FitResult } from './worker.ts'
  * reference when that is complete, and locked from then on. A sample that is compared with another one
  * (`reference: { sample: … }`) takes that one's recipe, since only spectra of one recipe are compared.
  */
-export const recipeInForce = ({ sample, instrument }: Subject, { store }: Stations): RecipeState | null =>
-  store.recipes.of(sample, instrument.name)
+export const recipeInForce = (
+  { sample, instrument }: Subject,
+  { store }: Pick<Stations, 'store'>,
+): RecipeState | null => store.recipes.of(sample, instrument.name)
 
 /** How many spectra at the most a recipe is chosen on. */
 const MOST_SPECTRA = 40
@@ -36,7 +38,7 @@ export const settleRecipe = async (subject: Subject, stations: Stations): Promis
 }
 
 /** The sample that this one is compared with, as a subject of the same study; null where it is its own reference. */
-const referenceSample = (subject: Subject): Subject | null => {
+export const referenceSample = (subject: Subject): Subject | null => {
   const { reference } = subject.study
   return reference.kind === 'sample' && reference.sample !== subject.sample
     ? { ...subject, sample: reference.sample }
@@ -46,7 +48,17 @@ const referenceSample = (subject: Subject): Subject | null => {
 export const occasionsNeeded = ({ study: { reference } }: Subject): number =>
   reference.kind === 'first' ? reference.occasions : reference.kind === 'values' ? 1 : OCCASIONS_BY_DEFAULT
 
-const ownOccasions = (subject: Subject, { store }: Stations) => {
+/** The spectra a sample's recipe is chosen on: its frozen reference, else its first occasions so far. */
+export const referenceSpectra = (subject: Subject, stations: Pick<Stations, 'store'>): readonly number[] => {
+  const { sample, instrument } = subject
+  const frozen = stations.store.recipes.frozenReference(sample, instrument.name)
+  if (frozen !== null) return frozen.filter((id) => !stations.store.decisions.isExcluded(id))
+  return ownOccasions(subject, stations)
+    .slice(0, occasionsNeeded(subject))
+    .flatMap(({ spectra }) => spectra)
+}
+
+const ownOccasions = (subject: Subject, { store }: Pick<Stations, 'store'>) => {
   const recipe = store.recipes.of(subject.sample, subject.instrument.name)
   if (recipe === null) return []
   const of = { sample: subject.sample, instrument: subject.instrument.name, recipe: recipe.sha256, engine: ENGINE }

@@ -66,6 +66,10 @@ export const spectra = (db: Db) => {
     `SELECT DISTINCT instrument FROM spectrum_now WHERE sample = ? ORDER BY instrument`,
   )
 
+  const ids = db.prepare<[string, string], { id: number }>(
+    `SELECT id FROM spectrum_now WHERE sample = ? AND instrument = ? ORDER BY measured_at, id`,
+  )
+
   return {
     add: (arrival: number, instrument: string, raw: RawSpectrum, identity: Identity): number => {
       const { x, y, ...asRead } = raw
@@ -92,6 +96,9 @@ export const spectra = (db: Db) => {
 
     /** Instruments that have measured the sample. */
     instrumentsOf: (sample: string): readonly string[] => instruments.all(sample).map(({ instrument }) => instrument),
+
+    /** All spectra of a sample on an instrument, excluded ones too, in order of measurement. */
+    idsOf: (sample: string, instrument: string): readonly number[] => ids.all(sample, instrument).map(({ id }) => id),
 
     get: (id: number): StoredSpectrum | null => {
       const row = one.get(id)
