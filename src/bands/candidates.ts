@@ -30,7 +30,7 @@ export const recipeName = (components: readonly RecipeComponent[], background: r
     ...bandsInWords(components.filter(({ kind }) => kind === 'band')),
     ...(components.some(({ kind }) => kind === 'flank') ? ['flank'] : []),
     ...background.map((term) =>
-      term.kind === 'constant' ? 'constant' : term.exponent === 4 ? 'scatter' : `scatter^${term.exponent}`,
+      term.kind !== 'scatter' ? term.kind : term.exponent === 4 ? 'scatter' : `scatter^${term.exponent}`,
     ),
   ].join(' + ')
 

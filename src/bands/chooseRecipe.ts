@@ -15,10 +15,19 @@ import type { Spectrum } from '../spectrum/types.ts'
 import { BACKGROUNDS, flankAtEdge, flankStart, RICH_BACKGROUND } from './candidates.ts'
 import { showsBand } from './fitBands.ts'
 import { bestOf, isSeen, judged, type Scored, score } from './judge.ts'
+import { placeOfStep } from './lampStep.ts'
 import { findMisfit } from './misfit.ts'
 import { farthest } from './modelSpread.ts'
 import { besideNarrow, withComponent, withNarrow } from './narrow.ts'
-import { disorder, joinNeighbours, reweigh, type Selection, selectPoints, usedWindow } from './points.ts'
+import {
+  disorder,
+  joinNeighbours,
+  reweigh,
+  type Selection,
+  selectPoints,
+  usedWindow,
+  withoutStretch,
+} from './points.ts'
 import { rivalsOf } from './rivals.ts'
 import {
   bandCount,
@@ -39,7 +48,7 @@ import {
 import { subsets } from './seeds.ts'
 import { shaped } from './shaping.ts'
 import { FIRST_LOOK, ROUGH } from './solveRecipe.ts'
-import type { BandHint, ChooseRecipe, Recipe, RecipeChoice } from './types.ts'
+import type { BackgroundTerm, BandHint, ChooseRecipe, Recipe, RecipeChoice } from './types.ts'
 
 const JOINED = 240
 /** For the first look, which takes recipes to be off by more than the curve bends between so many points. */
@@ -86,14 +95,43 @@ export const chooseRecipe: ChooseRecipe = (spectra, options) => {
   const hints = options.hints ?? []
   const narrow = hints.filter((hint) => hint.narrow)
   const broad = full.map((points) => besideNarrow(points, narrow))
-  const choice = choose(
-    spectra,
-    broad,
-    windowPerCm,
-    hints.filter((hint) => !hint.narrow),
-    options.bands,
-  )
+  const flagged = 2 * spectra.filter(({ flags }) => flags.includes('lamp-step')).length > spectra.length
+  const search = (points: readonly Selection[], extra: readonly BackgroundTerm[]) =>
+    choose(
+      spectra,
+      points,
+      windowPerCm,
+      hints.filter((hint) => !hint.narrow),
+      options.bands,
+      extra,
+    )
+  const plain = search(broad, [])
+  const choice = plain.kind === 'none' ? plain : withStep(plain, broad, flagged, search)
   return choice.kind === 'chosen' ? finished(choice, full, hints, narrow) : choice
+}
+
+/** Points joined across a step tell neither side: so much is left out about it, cm⁻¹. */
+const BESIDE_STEP_PER_CM = 100
+
+/** A step serves where it takes this share of the misfit away at least; where one is seen in the curve anyway, any share. */
+const SERVES = 0.5
+
+/** Another search with a step where the lamp changes, if the spectra show one that the recipe lacks, and it serves. */
+const withStep = (
+  plain: Extract<RecipeChoice, { kind: 'chosen' }>,
+  points: readonly Selection[],
+  flagged: boolean,
+  search: (points: readonly Selection[], extra: readonly BackgroundTerm[]) => RecipeChoice,
+): RecipeChoice => {
+  const atPerCm = placeOfStep(plain.recipe, points, flagged)
+  if (atPerCm === null) return plain
+  const beside = points.map((selection) =>
+    withoutStretch(selection, [atPerCm - BESIDE_STEP_PER_CM, atPerCm + BESIDE_STEP_PER_CM]),
+  )
+  const stepped = search(beside, [{ kind: 'step', atPerCm }])
+  if (stepped.kind === 'none') return plain
+  const [before, after] = [plain.recipe.misfit ?? 0, stepped.recipe.misfit ?? 0]
+  return after === 0 || after < (flagged ? 1 : SERVES) * before ? stepped : plain
 }
 
 /** What the search for broad bands does not tell: the shapes that the species asks for, and narrow features. */
@@ -102,7 +140,7 @@ const finished = (
   points: readonly Selection[],
   hints: readonly BandHint[],
   narrow: readonly BandHint[],
-): RecipeChoice => {
+): Extract<RecipeChoice, { kind: 'chosen' }> => {
   const joined = points.map((selection) => joinNeighbours(selection, 0, JOINED))
   const broad = shaped(recipe, hints, recipe.misfit === undefined ? joined : points)
   const whole = withNarrow(broad, narrow, points)
@@ -120,18 +158,23 @@ const choose = (
   windowPerCm: readonly [number, number],
   hints: readonly BandHint[],
   bands: number | undefined,
+  extra: readonly BackgroundTerm[],
 ): RecipeChoice => {
   const joined = full.map((points) => joinNeighbours(points, 0, JOINED))
   const seeds = placesOf(joined, hints)
   const tails: readonly Tail[] = [null, flankStart(joined), flankAtEdge(windowPerCm)]
   const few = full.map((points) => joinNeighbours(points, FIRST_MISFIT, JOINED_FIRST))
   const first = searching(few, windowPerCm, FIRST_LOOK)
-  const empty = BACKGROUNDS.flatMap((background) => tails.slice(0, 2).map((tail) => first([], tail, background)))
+  const empty = BACKGROUNDS.flatMap((background) =>
+    tails.slice(0, 2).map((tail) => first([], tail, [...background, ...extra])),
+  )
   const sets = subsets(seeds.slice(0, MOST_SEEDS), hints.length, bands)
   const starts = sets.flatMap((places) =>
     places.length > 1 && isLeading(places, seeds) ? [places, broadened(places)] : [places],
   )
-  const seeded = starts.flatMap((places) => tails.slice(0, 2).map((tail) => first(places, tail, RICH_BACKGROUND)))
+  const seeded = starts.flatMap((places) =>
+    tails.slice(0, 2).map((tail) => first(places, tail, [...RICH_BACKGROUND, ...extra])),
+  )
   const found = [...empty, ...seeded].filter((trial) => trial !== null)
   if (found.length === 0) return none(spectra, 'No recipe can be evaluated on these spectra.')
   // the closest of all, sensible or not, tells how far the spectra are from any sum of bands
@@ -139,12 +182,13 @@ const choose = (
   const points = joined.map((selection) => reweigh(selection, misfit))
   const attempt = searching(points, windowPerCm, ROUGH)
   const running = inTheRunning(leaders(found), few, bands)
-  const refined = running.flatMap((trial) => everyBackground(bandPlaces(trial), attempt, tails))
+  const refined = running.flatMap((trial) => everyBackground(bandPlaces(trial), attempt, tails, extra))
   const seen = refined.filter((trial) => trial !== null)
-  const suggested = suggestions(seen, points, bands, (places) => everyBackground(places, attempt, tails))
+  const suggested = suggestions(seen, points, misfit, bands, (places) => everyBackground(places, attempt, tails, extra))
   const scored = score(
     [...seen, ...suggested].flatMap((trial) => judged(trial, points, misfit) ?? []),
     points,
+    misfit,
   )
   const settled = new Map<Scored, Recipe>()
   const recipeOf = (trial: Scored): Recipe => {
@@ -216,12 +260,13 @@ const isSame = (one: Found, other: Found): boolean =>
 const suggestions = (
   seen: readonly Found[],
   points: readonly Selection[],
+  misfit: number,
   bands: number | undefined,
   attempt: (places: readonly Place[]) => readonly (Found | null)[],
 ): readonly Found[] => {
   let found: readonly Found[] = []
   for (let round = 0; round < (bands ?? 1); round++) {
-    const best = bestOf(score([...seen, ...found], points))
+    const best = bestOf(score([...seen, ...found], points, misfit))
     if (!best || bandCount(best.recipe) === 0 || bandCount(best.recipe) > (bands ?? Infinity)) break
     const tried = missingBands(best, points)
       .slice(0, MOST_SUGGESTED)

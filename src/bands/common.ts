@@ -153,7 +153,8 @@ export const common = (
 /** Where scatter is 1: the middle of the points. cm⁻¹ */
 export const scatterMiddle = (x: Float64Array): number => (x[0]! + x[x.length - 1]!) / 2
 
-export const scatterAt = (x: number, middle: number): number => backgroundAt(4, middle, x)
+export const scatterAt = (x: number, middle: number): number =>
+  backgroundAt({ kind: 'scatter', exponent: 4 }, middle, x)
 
 /** Products of all columns of one spectrum: of each band value and slopes, then 1, scatter and the measured values, weighted. */
 const productsOf = (bands: readonly RecipeComponent[], { x, y, weight }: Points, size: number) => {

@@ -10,9 +10,12 @@ export interface CurveParts {
 
 /** The fitted curve and its parts at the given vacuum wavenumbers, for drawings. */
 export const evaluateFit = (fit: Extract<BandFit, { kind: 'fitted' }>, wavenumberPerCm: Float64Array): CurveParts => {
-  const { constant, scatter, scatterExponent } = fit.background
+  const { constant, scatter, step } = fit.background
+  const heights = { constant, scatter, step: step?.height ?? 0 }
   const origin = scatterOrigin(fit.recipe)
-  const background = wavenumberPerCm.map((x) => constant + scatter * backgroundAt(scatterExponent ?? 0, origin, x))
+  const background = wavenumberPerCm.map((x) =>
+    fit.recipe.background.reduce((sum, term) => sum + heights[term.kind] * backgroundAt(term, origin, x), 0),
+  )
   const components = fit.components.map((component) => wavenumberPerCm.map(curveOf(component)))
   const total = background.map((b, i) => components.reduce((sum, part) => sum + part[i]!, b))
   return { total, components, background }

@@ -7,11 +7,13 @@ import { qualityOf } from './quality.ts'
 import { figuresOf } from './shapes.ts'
 import { type Solution, solveRecipe } from './solveRecipe.ts'
 import { rmsOf, standing } from './standing.ts'
-import type { BandFit, FitBands, FittedComponent, Recipe } from './types.ts'
+import type { BackgroundTerm, BandFit, FitBands, FittedBackground, FittedComponent, Recipe } from './types.ts'
 import { repeatabilityOf, type Uncertainty, uncertaintyOf } from './uncertainty.ts'
 
 /** χ²/n over noise and the recipe's misfit from which the recipe is said not to describe the spectrum. */
 const MISFIT_LIMIT = 6
+/** Standard uncertainties from which a step where the lamp changes is there. */
+const STEP_LIMIT = 4
 
 const unfitted = (
   spectrum: Spectrum,
@@ -89,6 +91,7 @@ const fitted = (
     (sum, r, i) => sum + (r / points.weight[i]! / points.noise[i]!) ** 2,
     0,
   )
+  const background = backgroundOf(recipe, solution, uncertainty)
   const freedom = Math.max(1, n - (uncertainty?.fitted ?? 3 * all.length))
   return {
     kind: 'fitted',
@@ -96,7 +99,7 @@ const fitted = (
     components: order.map((k) => all[k]!),
     positionCovariance:
       uncertainty && order.map((k) => order.map((l) => positionCovariance(recipe, solution, uncertainty, k, l) ?? 0)),
-    background: backgroundOf(recipe, solution),
+    background,
     rms: rmsOf(solution, points),
     noise: points.noise.toSorted()[n >> 1]!,
     reducedChi2: overNoise / freedom,
@@ -105,7 +108,13 @@ const fitted = (
     windowPerCm: [points.x[0]!, points.x[n - 1]!],
     iterations: solution.iterations,
     stopped: solution.stopped,
-    flags: [...new Set([...spectrum.flags, ...flagsOf(recipe, points, solution, uncertainty, present)])],
+    flags: [
+      ...new Set([
+        ...spectrum.flags,
+        ...flagsOf(recipe, points, solution, uncertainty, present),
+        ...stepFlag(background),
+      ]),
+    ],
   }
 }
 
@@ -220,14 +229,33 @@ const maximumMissed = (
   return isSame && distance > 3 * (measured.uPositionPerCm ?? Infinity) ? distance : 0
 }
 
-const backgroundOf = (recipe: Recipe, { at }: Solution) => {
-  const value = (kind: 'constant' | 'scatter') => {
-    const k = recipe.background.findIndex((term) => term.kind === kind)
-    return k < 0 ? 0 : at.coefficients[recipe.components.length + k]!
+const backgroundOf = (
+  { components, background }: Recipe,
+  { at }: Solution,
+  uncertainty: Uncertainty | null,
+): FittedBackground => {
+  const find = (kind: BackgroundTerm['kind']) => background.findIndex((term) => term.kind === kind)
+  const value = (k: number) => (k < 0 ? 0 : at.coefficients[components.length + k]!)
+  const scatter = background.find((term) => term.kind === 'scatter')
+  const step = background.find((term) => term.kind === 'step')
+  const k = find('step')
+  return {
+    constant: value(find('constant')),
+    scatter: value(find('scatter')),
+    scatterExponent: scatter?.exponent ?? null,
+    step: step
+      ? {
+          atPerCm: step.atPerCm,
+          height: value(k),
+          uHeight: uncertainty && root(uncertainty.ofCoefficient(components.length + k)),
+        }
+      : null,
   }
-  const scatter = recipe.background.find((term) => term.kind === 'scatter')
-  return { constant: value('constant'), scatter: value('scatter'), scatterExponent: scatter ? scatter.exponent : null }
 }
+
+/** A step that this very spectrum shows. */
+const stepFlag = ({ step }: FittedBackground): readonly Flag[] =>
+  step?.uHeight != null && Math.abs(step.height) > STEP_LIMIT * step.uHeight ? ['lamp-step'] : []
 
 const flagsOf = (
   recipe: Recipe,

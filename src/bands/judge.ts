@@ -81,6 +81,13 @@ export const isSeen = (trial: Trial, seeds: readonly Seed[]): boolean => {
   })
 }
 
+/**
+ * What a term of the background must gain (Akaike 1974), less than a parameter of a band (Schwarz 1978): a term left out that is there
+ * moves the bands by more than their uncertainty, one kept that is not there only widens it. Where structure is missed the
+ * uncertainty is not what counts, and every parameter has Schwarz's price.
+ */
+const PRICE_BEHIND = 2
+
 export interface Scored extends Trial {
   readonly score: number
 }
@@ -88,15 +95,19 @@ export interface Scored extends Trial {
 export const score = <T extends Found>(
   trials: readonly T[],
   points: readonly Selection[],
+  misfit: number,
 ): readonly (T & { readonly score: number })[] => {
   const closest = trials.reduce<T | null>((best, trial) => (best && best.chi2 <= trial.chi2 ? best : trial), null)
   if (!closest) return []
   const effective = points.map(({ x }, s) => x.length / correlationTime(closest.solutions[s]!.at.residuals))
   return trials.map((trial) => {
-    const parameters = 3 * trial.recipe.components.length + trial.recipe.background.length
+    const { components, background } = trial.recipe
     const total = trial.solutions.reduce(
       (sum, { chi2 }, s) =>
-        sum + effective[s]! * Math.log(chi2 / points[s]!.x.length) + parameters * Math.log(effective[s]!),
+        sum +
+        effective[s]! * Math.log(chi2 / points[s]!.x.length) +
+        3 * components.length * Math.log(effective[s]!) +
+        background.length * (misfit > 0 ? Math.log(effective[s]!) : PRICE_BEHIND),
       0,
     )
     return { ...trial, score: total }

@@ -47,9 +47,10 @@ const AS_WELL = 10
 
 const tiltedRivals = (best: Found, points: readonly Selection[]): readonly Found[] => {
   const count = points.reduce((sum, { x }) => sum + x.length, 0)
-  const { windowPerCm } = best.recipe
+  const { windowPerCm, background } = best.recipe
+  const steps = background.filter(({ kind }) => kind === 'step')
   return [false, flankStart(points)].flatMap((tail) => {
-    const recipe = makeRecipe(bandPlaces(best), tail, TILTED, windowPerCm, 'search')
+    const recipe = makeRecipe(bandPlaces(best), tail, [...TILTED, ...steps], windowPerCm, 'search')
     const found = solved(recipe, points)
     return found && found.chi2 < best.chi2 * (1 + AS_WELL / count) ? [found] : []
   })

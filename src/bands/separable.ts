@@ -11,7 +11,7 @@
 import { fillColumns } from './columns.ts'
 import { gramBlock, type Triple } from './gram.ts'
 import type { Quadratic } from './levenbergMarquardt.ts'
-import { backgroundAt, backgroundExponents, scatterOrigin } from './shapes.ts'
+import { backgroundAt, scatterOrigin } from './shapes.ts'
 import { type Cholesky, cholesky, forward, gathered, roomFor, solveInPlace, submatrix } from './symmetric.ts'
 import type { Recipe } from './types.ts'
 
@@ -123,11 +123,11 @@ const letBack = (
  */
 export const separable = (recipe: Recipe, points: Points): Objective => {
   const { x, weight } = points
-  const { components } = recipe
+  const { components, background } = recipe
   const bands = components.length
   const edge = recipe.windowPerCm[1]
-  const { groups, rest, linearColumns, target, exponents } = columnsOf(recipe, points)
-  const m = bands + exponents.length
+  const { groups, rest, linearColumns, target } = columnsOf(recipe, points)
+  const m = bands + background.length
   const n = 2 * bands
   const count = x.length
   // products of all columns: of each component its value and two slopes, then the background, then the measured values
@@ -137,8 +137,8 @@ export const separable = (recipe: Recipe, points: Points): Objective => {
     for (let j = 0; j <= i; j++) gramBlock(rest[i]!, rest[j]!, products, size, 3 * (bands + i), 3 * (bands + j))
   const places = Array.from({ length: m }, (_, i) => (i < bands ? 3 * i : 3 * bands + i - bands))
   const slopes = Array.from({ length: n }, (_, a) => 3 * (a >> 1) + 1 + (a & 1))
-  const measured = [3 * bands + exponents.length]
-  const signed = places.map((_, i) => i >= bands && exponents[i - bands] === 0)
+  const measured = [3 * bands + background.length]
+  const signed = places.map((_, i) => i >= bands && background[i - bands]!.kind !== 'scatter')
   const pick = (rows: readonly number[], columns: readonly number[], into: Float64Array) => {
     let at = 0
     for (const row of rows) for (const k of columns) into[at++] = products[row * size + k]!
@@ -207,10 +207,9 @@ const emptyResult = (m: number, n: number, count: number): Separated => ({
 /** The columns of a fit, weighted: three of each component, background and measured values in threes, and those that are linear in threes. */
 const columnsOf = (recipe: Recipe, { x, y, weight }: Points) => {
   const count = x.length
-  const exponents = backgroundExponents(recipe)
   const origin = scatterOrigin(recipe)
   // one piece of memory for all columns: many small ones cost as much as the sums
-  const memory = new Float64Array(count * (3 * recipe.components.length + exponents.length + 2))
+  const memory = new Float64Array(count * (3 * recipe.components.length + recipe.background.length + 2))
   let taken = 0
   const column = () => {
     taken += count
@@ -219,14 +218,14 @@ const columnsOf = (recipe: Recipe, { x, y, weight }: Points) => {
   const target = column()
   for (let i = 0; i < count; i++) target[i] = y[i]! * weight[i]!
   const groups: readonly Triple[] = recipe.components.map(() => [column(), column(), column()])
-  const fixed = exponents.map((exponent) => {
+  const fixed = recipe.background.map((term) => {
     const background = column()
-    for (let i = 0; i < count; i++) background[i] = backgroundAt(exponent, origin, x[i]!) * weight[i]!
+    for (let i = 0; i < count; i++) background[i] = backgroundAt(term, origin, x[i]!) * weight[i]!
     return background
   })
   const empty = column()
   const linearColumns = inTriples([...groups.map(([value]) => value), ...fixed], empty)
-  return { target, exponents, groups, rest: inTriples([...fixed, target], empty), linearColumns }
+  return { target, groups, rest: inTriples([...fixed, target], empty), linearColumns }
 }
 
 /** Filled up with an empty column. */

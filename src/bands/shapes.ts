@@ -15,7 +15,7 @@
  */
 
 import type { Box } from './levenbergMarquardt.ts'
-import type { BandShape, FittedComponent, Recipe, RecipeComponent } from './types.ts'
+import type { BackgroundTerm, BandShape, FittedComponent, Recipe, RecipeComponent } from './types.ts'
 
 /** 4 ln 2 */
 export const FOUR_LN2 = 4 * Math.LN2
@@ -111,14 +111,19 @@ const lineWidth = (shape: BandShape, fullPerCm: number): number => {
 }
 
 /** The middle of the window, at which scatter is given. */
-export const scatterOrigin = (recipe: Recipe): number => (recipe.windowPerCm[0] + recipe.windowPerCm[1]) / 2
+export const scatterOrigin = ({ windowPerCm: [from, to] }: Pick<Recipe, 'windowPerCm'>): number => (from + to) / 2
 
-/** Background term at wavenumber x: 1, or (x/x₀)ⁿ. */
-export const backgroundAt = (exponent: number, origin: number, x: number): number =>
-  exponent === 0 ? 1 : exponent === 4 ? ((x / origin) ** 2) ** 2 : (x / origin) ** exponent
-
-export const backgroundExponents = (recipe: Recipe): readonly number[] =>
-  recipe.background.map((term) => (term.kind === 'constant' ? 0 : term.exponent))
+/** Background term at wavenumber x: 1, (x/x₀)ⁿ, or 0 below and 1 above its place. */
+export const backgroundAt = (term: BackgroundTerm, origin: number, x: number): number => {
+  switch (term.kind) {
+    case 'constant':
+      return 1
+    case 'scatter':
+      return term.exponent === 4 ? ((x / origin) ** 2) ** 2 : (x / origin) ** term.exponent
+    case 'step':
+      return x > term.atPerCm ? 1 : 0
+  }
+}
 
 export interface ComponentFigures {
   readonly positionPerCm: number

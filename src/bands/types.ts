@@ -43,8 +43,11 @@ export interface RecipeComponent {
   readonly widthBoundsPerCm: readonly [number, number]
 }
 
-/** `scatter` grows as (ν̃/ν̃₀)ⁿ. */
-export type BackgroundTerm = { readonly kind: 'constant' } | { readonly kind: 'scatter'; readonly exponent: number }
+/** `scatter` grows as (ν̃/ν̃₀)ⁿ; `step`, where a lamp or detector changes, is added above its place. */
+export type BackgroundTerm =
+  | { readonly kind: 'constant' }
+  | { readonly kind: 'scatter'; readonly exponent: number }
+  | { readonly kind: 'step'; readonly atPerCm: number }
 
 /** Where bands are expected, if anything is known. */
 export interface BandHint {
@@ -111,6 +114,8 @@ export interface FittedBackground {
   /** Scatter at the middle of the window, absorbance. */
   readonly scatter: number
   readonly scatterExponent: number | null
+  /** What a change of lamp or detector adds above its place, absorbance; null where the recipe has none. */
+  readonly step: { readonly atPerCm: number; readonly height: number; readonly uHeight: number | null } | null
 }
 
 export type BandFit =

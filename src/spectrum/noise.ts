@@ -1,14 +1,18 @@
 /**
  * Noise, estimated where it stands. Each point is compared with the cubic through its two neighbours on either side
  * (unequal spacing allowed): whatever the curve does up to third order cancels, so the difference r = y − Σ wₖ yₖ is noise
- * alone with variance σ²(1 + Σ wₖ²). The median of |r| in a moving window times 1.4826 is a robust σ (a normal
- * distribution's median absolute deviation is 0.6745 σ). Within a window σ is taken to grow with 10^A, the law of a
+ * alone with variance σ²(1 + Σ wₖ²). In a moving window the root of the mean r², no point counting more than 2.5 σ of the median
+ * absolute deviation (0.6745 σ in a normal distribution), is robust and nearly as sharp as the plain root mean square: weights that
+ * scatter would widen what is fitted with them. Within a window σ is taken to grow with 10^A, the law of a
  * detector of constant noise in transmittance; between windows it is free, since lamps and detectors are not
  * constant: on real spectra σ differs a hundredfold between the middle and the ends.
  */
 
 const MAD_TO_SIGMA = 1.4826
-const HALF_WINDOW = 20
+/** Where r² is clipped, in σ, and the mean of what is left of a normal distribution's, E min(z², 2.5²). */
+const CLIP = 2.5
+const LEFT_OF_CLIPPED = 0.97756
+const HALF_WINDOW = 30
 
 /** Smallest noise ever reported, absorbance: keeps weights finite on curves that were computed, not measured. */
 export const NOISE_FLOOR = 1e-6
@@ -82,7 +86,7 @@ export const localNoise = (
       const i = index[from + j]!
       scaled[j] = Math.abs(r[i]!) / growth(y[i]! - middle)
     }
-    nodes.push({ at: index[k]!, log: Math.log(MAD_TO_SIGMA * median(scaled) + 1e-300), level: middle })
+    nodes.push({ at: index[k]!, log: Math.log(robustDeviation(scaled) + 1e-300), level: middle })
     if (k === index.length - 1) break
   }
   const smooth = nodes.map((_, j) => meanOf(nodes.slice(Math.max(0, j - 2), j + 3).map((node) => node.log)))
@@ -97,6 +101,15 @@ export const localNoise = (
     noise[i] = Math.max(sigma * growth(local[i]! - at(a.level, b.level)), floor[i]!, NOISE_FLOOR)
   }
   return noise
+}
+
+/** Standard deviation of values about zero, given their sizes. */
+const robustDeviation = (sizes: Float64Array): number => {
+  const rough = MAD_TO_SIGMA * median(sizes)
+  const most = (CLIP * rough) ** 2
+  let sum = 0
+  for (let i = 0; i < sizes.length; i++) sum += Math.min(sizes[i]! * sizes[i]!, most)
+  return Math.sqrt(sum / sizes.length / LEFT_OF_CLIPPED)
 }
 
 /** 10^ΔA, held within a factor of ten: one window never explains more than that by absorbance alone. */

@@ -196,3 +196,24 @@ describe('a band whose maximum lies outside the window', () => {
     expect(second.kind === 'flank' || fit.flags.includes('outside-window')).toBe(true)
   })
 })
+
+it('a lamp that changes at 600 nm is part of the recipe: its place found, the bands where they are', () => {
+  const normal = gaussianNoise(generator(41))
+  const curve = (x: number) =>
+    0.5 * Math.exp(-4 * Math.LN2 * ((x - 17400) / 3600) ** 2) +
+    0.45 * Math.exp(-4 * Math.LN2 * ((x - 24600) / 3900) ** 2) +
+    (x < 1e7 / 600.5 ? 0.006 : 0)
+  const spectra = Array.from({ length: 4 }, () => simulate(curve, 1e-3, normal))
+  const choice = chooseRecipe(spectra, {})
+  if (choice.kind === 'none') throw new Error(choice.why)
+  expect(choice.recipe.name).toContain('+ step')
+  const step = choice.recipe.background.find((term) => term.kind === 'step')
+  expect(Math.abs((step?.atPerCm ?? 0) - 1e7 / 600.5)).toBeLessThan(60)
+  for (const spectrum of spectra) {
+    const fit = fitBands(spectrum, choice.recipe, choice.admissible)
+    if (fit.kind === 'unfitted') throw new Error(fit.why)
+    expect(fit.flags).toContain('lamp-step')
+    expect(Math.abs(fit.components[0]!.positionPerCm - 17400)).toBeLessThan(4 * fit.components[0]!.uPositionPerCm!)
+    expect(Math.abs(fit.background.step!.height + 0.006)).toBeLessThan(5 * fit.background.step!.uHeight!)
+  }
+})
