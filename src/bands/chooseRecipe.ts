@@ -265,7 +265,9 @@ const suggestions = (
   attempt: (places: readonly Place[]) => readonly (Found | null)[],
 ): readonly Found[] => {
   let found: readonly Found[] = []
-  for (let round = 0; round < (bands ?? 1); round++) {
+  // where noise is reached nothing is missing
+  const rounds = bands ?? (misfit > 0 ? 1 : 0)
+  for (let round = 0; round < rounds; round++) {
     const best = bestOf(score([...seen, ...found], points, misfit))
     if (!best || bandCount(best.recipe) === 0 || bandCount(best.recipe) > (bands ?? Infinity)) break
     const tried = missingBands(best, points)

@@ -37,7 +37,8 @@ export const judged = (found: Found, points: readonly Selection[], misfit: numbe
   if (!used || !sensible(DETERMINED.admissible)) return null
   const present = solutions.map((solution, s) => {
     const weighted = { ...recipe, misfit }
-    return standing(weighted, solution, points[s]!, repeatabilityOf(weighted, solution, points[s]!, 'stated'))
+    const own = uncertainties[s]!
+    return standing(weighted, solution, points[s]!, repeatabilityOf(weighted, solution, points[s]!, 'stated', own), own)
   })
   const stands = recipe.components.every(
     ({ kind }, k) => kind === 'flank' || 2 * present.filter((there) => there[k]!).length >= solutions.length,

@@ -16,7 +16,8 @@ export interface Seed {
 
 /** Half the stretch over which the curve is smoothed, cm⁻¹: a fraction of the narrowest band, and more for what is weak or thinly measured. */
 const REACHES_PER_CM = [700, 1400] as const
-const STEPS = 140
+/** So many looks over half a stretch. */
+const LOOKS = 4
 /** Curvature counts when it exceeds this many standard uncertainties. */
 const SIGNIFICANT = 4
 /** Widths of d–d bands at room temperature (common practice: 1500–6000 cm⁻¹), with a margin. */
@@ -36,22 +37,24 @@ export const findSeeds = (points: Points): readonly Seed[] => {
 
 const seedsAt = (points: Points, reachPerCm: number): readonly Seed[] => {
   const first = points.x[0]!
-  const step = (points.x.at(-1)! - first) / STEPS
+  const span = points.x.at(-1)! - first
+  const steps = Math.ceil((LOOKS * span) / reachPerCm)
+  const step = span / steps
   const at = (k: number) => first + k * step
-  const curvature = Array.from({ length: STEPS + 1 }, (_, k) => {
+  const curvature = Array.from({ length: steps + 1 }, (_, k) => {
     const local = localPolynomial(points, at(k), reachPerCm, 2)
     return local ? { value: (2 * local.coefficients[2]!) / reachPerCm ** 2, local } : { value: 0, local }
   })
   const u = (local: LocalPolynomial) => (2 * Math.sqrt(local.covariance()[8]!)) / reachPerCm ** 2
   const crossing = (k: number, direction: 1 | -1) => {
     let i = k
-    while (i > 0 && i < STEPS && curvature[i]!.value < 0) i += direction
+    while (i > 0 && i < steps && curvature[i]!.value < 0) i += direction
     return Math.abs(i - k) * step
   }
   return curvature.flatMap(({ value, local }, k): Seed[] => {
     const isMinimum =
       k > 0 &&
-      k < STEPS &&
+      k < steps &&
       value <= curvature[k - 1]!.value &&
       value < curvature[k + 1]!.value &&
       local !== null &&

@@ -16,8 +16,8 @@ export const standing = (
   solution: Solution,
   points: Selection,
   repeatability: Uncertainty | null,
+  asIfScatter: Uncertainty | null = uncertaintyOf(recipe, solution),
 ): readonly boolean[] => {
-  const asIfScatter = uncertaintyOf(recipe, solution)
   const rms = rmsOf(solution, points)
   return recipe.components.map((_, k) => {
     const height = solution.at.coefficients[k]!

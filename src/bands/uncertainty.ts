@@ -75,8 +75,8 @@ export const repeatabilityOf = (
   solution: Solution,
   points: Selection,
   scatter: 'measured' | 'stated' = 'measured',
+  asIfScatter: Uncertainty | null = uncertaintyOf(recipe, solution),
 ): Uncertainty | null => {
-  const asIfScatter = uncertaintyOf(recipe, solution)
   if (!(recipe.misfit !== undefined && recipe.misfit > 0) || asIfScatter === null) return asIfScatter
   const { at, parameters } = solution
   const { x, y, weight, noise } = points
