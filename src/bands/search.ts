@@ -59,23 +59,23 @@ export const broadened = (places: readonly Seed[]): readonly Place[] =>
   places.map((place, k) => (k === 0 ? place : { ...place, widthPerCm: Math.min(WIDEST_PER_CM, 2 * place.widthPerCm) }))
 
 /**
- * These places on every background (and what `extra` adds to each), without a flank and with one from each start. What reaches the noise rests in no false minimum and
- * gains nothing by a flank that could pay for it: further starts are not tried.
+ * These places on every background (and what `extra` adds to each), without a flank, then with one from each start. What reaches the noise
+ * rests in no false minimum and gains nothing by a flank that could pay for it: no further flank is tried.
  */
 export const everyBackground = (
   places: readonly Place[],
   attempt: Attempt,
   tails: readonly Tail[],
   extra: readonly BackgroundTerm[],
-): readonly (Found | null)[] =>
-  [...BACKGROUNDS, ...OTHER_BACKGROUNDS].flatMap((background) => {
-    const found: (Found | null)[] = []
-    for (const tail of tails) {
-      if (found.some((trial) => trial && isAtNoise(trial))) break
-      found.push(attempt(places, tail, [...background, ...extra]))
-    }
-    return found
-  })
+): readonly (Found | null)[] => {
+  const found: (Found | null)[] = []
+  const backgrounds = [...BACKGROUNDS, ...OTHER_BACKGROUNDS]
+  for (const tail of tails) {
+    if (found.some((trial) => trial && isAtNoise(trial))) break
+    for (const background of backgrounds) found.push(attempt(places, tail, [...background, ...extra]))
+  }
+  return found
+}
 
 /** χ² within three standard deviations of the number of points. */
 const isAtNoise = ({ solutions, chi2 }: Found): boolean => {
