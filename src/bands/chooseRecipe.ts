@@ -165,20 +165,19 @@ const choose = (
   const tails: readonly Tail[] = [null, flankStart(joined), flankAtEdge(windowPerCm)]
   const few = full.map((points) => joinNeighbours(points, FIRST_MISFIT, JOINED_FIRST))
   const first = searching(few, windowPerCm, FIRST_LOOK)
-  const empty = BACKGROUNDS.flatMap((background) =>
-    tails.slice(0, 2).map((tail) => first([], tail, [...background, ...extra])),
-  )
   const sets = subsets(seeds.slice(0, MOST_SEEDS), hints.length, bands)
   const starts = sets.flatMap((places) =>
     places.length > 1 && isLeading(places, seeds) ? [places, broadened(places)] : [places],
   )
-  const seeded = starts.flatMap((places) =>
-    tails.slice(0, 2).map((tail) => first(places, tail, [...RICH_BACKGROUND, ...extra])),
-  )
-  const found = [...empty, ...seeded].filter((trial) => trial !== null)
+  const look = (tail: Tail) => [
+    ...BACKGROUNDS.map((background) => first([], tail, [...background, ...extra])),
+    ...starts.map((places) => first(places, tail, [...RICH_BACKGROUND, ...extra])),
+  ]
+  const bare = look(null).filter((trial) => trial !== null)
+  // where noise is reached without a flank one would be looked for in vain
+  const found = missed(bare, joined) === 0 ? bare : [...bare, ...look(tails[1]!).filter((trial) => trial !== null)]
   if (found.length === 0) return none(spectra, 'No recipe can be evaluated on these spectra.')
-  // the closest of all, sensible or not, tells how far the spectra are from any sum of bands
-  const misfit = findMisfit(started(found.reduce(closer)), joined)
+  const misfit = found === bare ? 0 : missed(found, joined)
   const points = joined.map((selection) => reweigh(selection, misfit))
   const attempt = searching(points, windowPerCm, ROUGH)
   const running = inTheRunning(leaders(found), few, bands)
@@ -240,6 +239,10 @@ const choose = (
   const rivals = farthest(best, [...(isMissed && richer ? [richer] : []), ...shaped, ...close])
   return { kind: 'chosen', recipe, admissible: [recipe, ...rivals.map((other) => settle(other, joined))] }
 }
+
+/** The misfit of the closest of all, sensible or not: how far the spectra are from any sum of bands. */
+const missed = (found: readonly Found[], points: readonly Selection[]): number =>
+  found.length === 0 ? Infinity : findMisfit(started(found.reduce(closer)), points)
 
 /** Numbers of bands whose closest recipe is not off by ten times as much as another that is sensible. */
 const inTheRunning = (

@@ -77,7 +77,7 @@ export const everyBackground = (
   return found
 }
 
-/** χ² within three standard deviations of the number of points. */
+/** χ², under the weights it was solved with, within three standard deviations of the number of points. */
 const isAtNoise = ({ solutions, chi2 }: Found): boolean => {
   const count = solutions.reduce((sum, { at }) => sum + at.residuals.length, 0)
   return chi2 < count + 3 * Math.sqrt(2 * count)

@@ -32,6 +32,8 @@ export const growthOver = (fits: number): number => {
     weight: spectrum.noise.map((s) => 1 / s),
   }
   const size = () => {
+    // buffers of arrays are given back by the collection after
+    collect()
     collect()
     const { heapUsed, arrayBuffers } = process.memoryUsage()
     return heapUsed + arrayBuffers
