@@ -43,10 +43,7 @@ export const assignBands = (
     }
   const tallest = Math.max(...observed.map(({ height }) => height))
   const faint = observed.map(({ height, hint }) => height < FAINT * tallest || hint?.startsWith('sf') === true)
-  const weighed = hypotheses(scheme, faint)
-    .map((hypothesis) => ({ hypothesis, odds: weigh(ion, scheme, observed, hypothesis) }))
-    .filter(({ odds }) => odds > Number.NEGATIVE_INFINITY)
-    .sort((a, b) => b.odds - a.odds)
+  const weighed = weighAll(ion, scheme, observed, hypotheses(scheme, faint))
   const best = weighed[0]!
   const total = weighed.reduce((sum, { odds }) => sum + Math.exp(odds - best.odds), 0)
   const second = weighed[1]
@@ -71,13 +68,50 @@ const flagsOf = (scheme: TermScheme, hypothesis: Hypothesis, close: boolean): re
   return flags
 }
 
+interface Weighed {
+  readonly hypothesis: Hypothesis
+  /** Log odds up to a constant. */
+  readonly odds: number
+}
+
+/** What is less likely than the best by this much in log odds tells nothing. */
+const NEGLIGIBLE = 30
+
+/** The assignments that can be, likeliest first. What the parameters say only lowers odds: one that is far behind before they are solved stays so. */
+const weighAll = (
+  ion: Ion,
+  scheme: TermScheme,
+  observed: readonly ObservedBand[],
+  all: readonly Hypothesis[],
+): readonly Weighed[] => {
+  const plain = all
+    .map((hypothesis) => ({ hypothesis, odds: plainOdds(scheme, observed, hypothesis) }))
+    .sort((a, b) => b.odds - a.odds)
+  const weighed: Weighed[] = []
+  let best = Number.NEGATIVE_INFINITY
+  for (const { hypothesis, odds: most } of plain) {
+    if (most < best - NEGLIGIBLE) break
+    const odds = weigh(ion, scheme, observed, hypothesis, most)
+    if (odds > Number.NEGATIVE_INFINITY) weighed.push({ hypothesis, odds })
+    best = Math.max(best, odds)
+  }
+  return weighed.sort((a, b) => b.odds - a.odds)
+}
+
+const plainOdds = (scheme: TermScheme, observed: readonly ObservedBand[], hypothesis: Hypothesis): number =>
+  intensity(scheme, observed, hypothesis) + simplicity(scheme, observed, hypothesis) + hinted(observed, hypothesis)
+
 /** Log odds of one assignment, up to a constant; −∞ where it cannot be. */
-const weigh = (ion: Ion, scheme: TermScheme, observed: readonly ObservedBand[], hypothesis: Hypothesis): number => {
+const weigh = (
+  ion: Ion,
+  scheme: TermScheme,
+  observed: readonly ObservedBand[],
+  hypothesis: Hypothesis,
+  plain: number,
+): number => {
   const bands = hypothesis.flatMap((choice, i) =>
     choice === null ? [] : [{ role: choice.role, positionPerCm: observed[i]!.positionPerCm }],
   )
-  const plain =
-    intensity(scheme, observed, hypothesis) + simplicity(scheme, observed, hypothesis) + hinted(observed, hypothesis)
   if (bands.length === 0) return plain
   const covariance = bands.map(({ positionPerCm }, i) => {
     const own = observed.find((band) => band.positionPerCm === positionPerCm)!.uPositionPerCm

@@ -8,6 +8,11 @@ export const findGaps = (x: Float64Array): readonly number[] => {
   const spacing = new Float64Array(Math.max(0, n - 1))
   for (let i = 0; i < n - 1; i++) spacing[i] = Math.abs(x[i + 1]! - x[i]!)
   for (let i = 0; i < spacing.length; i++) {
+    // no median of the neighbours is less than the least of them
+    let least = Infinity
+    for (let k = Math.max(0, i - 5); k < Math.min(spacing.length, i + 6); k++)
+      if (k !== i) least = Math.min(least, spacing[k]!)
+    if (!(spacing[i]! > 2.5 * least)) continue
     const near = [spacing.slice(Math.max(0, i - 5), i), spacing.slice(i + 1, i + 6)].filter((side) => side.length >= 2)
     if (near.length === 0) continue
     if (spacing[i]! > 2.5 * Math.max(...near.map(median))) gaps.push(i)

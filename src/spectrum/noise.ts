@@ -77,7 +77,7 @@ export const localNoise = (
   const level = new Float64Array(width)
   const scaled = new Float64Array(width)
   const nodes: { at: number; log: number; level: number }[] = []
-  const step = Math.max(1, Math.floor(half / 4))
+  const step = Math.max(1, Math.floor(half / 2))
   for (let k = 0; ; k = Math.min(k + step, index.length - 1)) {
     const from = Math.min(Math.max(k - half, 0), index.length - width)
     for (let j = 0; j < width; j++) level[j] = y[index[from + j]!]!
@@ -89,7 +89,7 @@ export const localNoise = (
     nodes.push({ at: index[k]!, log: Math.log(robustDeviation(scaled) + 1e-300), level: middle })
     if (k === index.length - 1) break
   }
-  const smooth = nodes.map((_, j) => meanOf(nodes.slice(Math.max(0, j - 2), j + 3).map((node) => node.log)))
+  const smooth = nodes.map((_, j) => meanOf(nodes.slice(Math.max(0, j - 1), j + 2).map((node) => node.log)))
   const local = movingMedian(y, used, 4)
   for (let i = 0, j = 0; i < n; i++) {
     while (j < nodes.length - 2 && nodes[j + 1]!.at <= i) j++

@@ -56,7 +56,8 @@ export const prepareSpectrum = (raw: RawSpectrum, options: PrepareOptions): Prep
     used.mask[i] === 1 ? Math.max(quantum * ordinate.slope(y), NOISE_FLOOR) : NOISE_FLOOR,
   )
   const stepNm = medianStepNm(axis, raw.xUnit)
-  const spike = findSpikes(perCm, value, used.mask, floor, stepNm, options.bandwidthNm)
+  const noiseWithSpikes = localNoise(perCm, value, used.mask, floor)
+  const spike = findSpikes(perCm, value, used.mask, noiseWithSpikes, stepNm, options.bandwidthNm)
   const spikes = [...spike.keys()].filter((i) => spike[i] === 1)
   for (const i of spikes) used.mask[i] = 0
   if (spikes.length > 0) {
@@ -65,7 +66,7 @@ export const prepareSpectrum = (raw: RawSpectrum, options: PrepareOptions): Prep
       `${count(spikes.length, 'point')} in or beside a spike narrower than the bandwidth, masked: ${where(spikes)}`,
     )
   }
-  const noise = localNoise(perCm, value, used.mask, floor)
+  const noise = spikes.length > 0 ? localNoise(perCm, value, used.mask, floor) : noiseWithSpikes
   const negative = [...value.keys()].filter((i) => used.mask[i] === 1 && value[i]! < -Math.max(5 * noise[i]!, 0.005))
   if (negative.length > 0) {
     say(
@@ -142,10 +143,16 @@ interface Points {
 
 const sorted = (raw: RawSpectrum, medium: 'air' | 'vacuum'): Points => {
   const all = raw.x.map((x) => vacuumPerCm(x, raw.xUnit, medium))
+  const { x: axis, y: rawY } = raw
+  if (ascends(all)) return { perCm: all, axis, rawY }
+  const back = (from: Float64Array) => from.slice().reverse()
+  if (ascends(back(all))) return { perCm: back(all), axis: back(axis), rawY: back(rawY) }
   const order = [...all.keys()].sort((a, b) => all[a]! - all[b]!)
   const pick = (from: Float64Array) => Float64Array.from(order, (i) => from[i]!)
-  return { perCm: pick(all), axis: pick(raw.x), rawY: pick(raw.y) }
+  return { perCm: pick(all), axis: pick(axis), rawY: pick(rawY) }
 }
+
+const ascends = (x: Float64Array): boolean => x.every((value, i) => i === 0 || x[i - 1]! < value)
 
 /** One abscissa twice: the same ordinate is a repeat and left out, another one a contradiction nobody here can settle. */
 const withoutRepeats = (
@@ -167,6 +174,7 @@ const withoutRepeats = (
       return { kind: 'contradiction', fault: { code: 'duplicate-abscissa', place: { at: 'axis' }, what, remedy } }
     }
   }
+  if (keep.length === perCm.length) return { kind: 'unique', perCm, axis, rawY, repeats: 0 }
   const pick = (from: Float64Array) => Float64Array.from(keep, (i) => from[i]!)
   return { kind: 'unique', perCm: pick(perCm), axis: pick(axis), rawY: pick(rawY), repeats: perCm.length - keep.length }
 }

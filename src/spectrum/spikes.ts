@@ -4,19 +4,18 @@
  * away. Masked greedily, the roughest first, each time against neighbours that are not masked yet.
  */
 import { lineAt } from './axisFlaws.ts'
-import { localNoise, roughness, roughnessAt, usedPlaces } from './noise.ts'
+import { roughness, roughnessAt, usedPlaces } from './noise.ts'
 
 const TIMES_NOISE = 8
-const WINDOW = 30
 const PASSES = 40
 const MAX_GROWTH = 6
 
-/** Marks spikes: 1 where a point is one, or lies between two. `stepNm` and `bandwidthNm` in one unit. */
+/** Marks spikes: 1 where a point is one, or lies between two. `sigma` is the local noise; `stepNm` and `bandwidthNm` in one unit. */
 export const findSpikes = (
   x: Float64Array,
   y: Float64Array,
   used: Uint8Array,
-  floor: Float64Array,
+  sigma: Float64Array,
   stepNm: number,
   bandwidthNm: number,
 ): Uint8Array => {
@@ -24,7 +23,6 @@ export const findSpikes = (
   const spike = new Uint8Array(n)
   if (used.reduce((a, b) => a + b, 0) < 15) return spike
   const left = Uint8Array.from(used)
-  const sigma = localNoise(x, y, left, floor, WINDOW)
   const shoulder = Math.max(0.15, 0.5 * Math.exp(-4 * Math.LN2 * (stepNm / bandwidthNm) ** 2))
   const reach = Math.max(2, Math.floor(bandwidthNm / (2 * stepNm)) + 1)
   const r = roughness(x, y, left)

@@ -4,9 +4,11 @@
  */
 import { execFileSync } from 'node:child_process'
 import { levenbergMarquardt } from 'ml-levenberg-marquardt'
-import { chooseRecipe, fitBands } from '../../dist/bands/index.js'
+import { analyse } from '../../dist/analysis/index.js'
+import { fitBands } from '../../dist/bands/index.js'
 import { separable } from '../../dist/bands/separable.js'
 import { solveRecipe } from '../../dist/bands/solveRecipe.js'
+import { findIon } from '../../dist/chemistry/ions.js'
 
 const FOUR_LN2 = 4 * Math.LN2
 const TRUTH = [
@@ -60,6 +62,28 @@ const recipeFor = (x) => ({
   background: [{ kind: 'constant' }, { kind: 'scatter', exponent: 4 }],
   windowPerCm: [x[0], x[x.length - 1]],
 })
+
+const rawOf = ({ wavenumberPerCm, absorbance }) => ({
+  index: 0,
+  x: wavenumberPerCm,
+  y: absorbance,
+  xUnit: 'cm^-1',
+  medium: 'vacuum',
+  yKind: 'absorbance',
+  ...{ sample: null, title: null, time: null, pathMm: null, temperatureC: null, concentrationMolPerL: null },
+  header: {},
+  warnings: [],
+})
+
+const CONTEXT = {
+  prepare: { medium: 'air', absorbanceLimit: 3, bandwidthNm: 1 },
+  ion: findIon('Cr3+').ion,
+  geometry: 'octahedral',
+  spin: null,
+  expected: [],
+  bands: null,
+  repeatabilityNm: null,
+}
 
 /** Median milliseconds of one call, over `rounds` batches. */
 const time = (call, batch, rounds = 15) => {
@@ -153,10 +177,18 @@ export const run = async () => {
   else console.log('  SciPy: skipped, python3 has no scipy')
   for (const count of [601, 3501]) {
     const whole = simulate(count)
-    const call = () => {
-      const choice = chooseRecipe([whole], {})
-      return choice.kind === 'chosen' ? fitBands(whole, choice.recipe, choice.admissible) : null
-    }
-    say(`chooseRecipe + fitBands, ${count} points`, time(call, 10), call()?.recipe?.name)
+    const raw = rawOf(whole)
+    const call = () => analyse(raw, CONTEXT, null)
+    const { analysis } = call()
+    const locked = analysis.locked
+    say(
+      `noise, recipe, fit, ligand field, ${count} points`,
+      time(call, 10),
+      `${analysis.fit.recipe.name}, Δ ${analysis.ligandField.deltaPerCm.toFixed(1)}`,
+    )
+    say(
+      `the same under a locked recipe, ${count} points`,
+      time(() => analyse(raw, CONTEXT, locked), 10),
+    )
   }
 }
