@@ -10,7 +10,6 @@ export const notesOf = (config: Config): readonly string[] => [
   ...(config.web?.token ? secretNotes('the token of the web page', config.web.token) : []),
   ...config.studies.flatMap((study) => studyNotes(config, study)),
   ...ruleNotes(config),
-  'rule common-change: this version does not judge it yet; samples that move together each ring for themselves',
   ...config.species
     .filter(({ name }) => !config.studies.some(({ species }) => species === name))
     .map(({ name }) => `species ${name}: no study is of it`),
@@ -58,6 +57,8 @@ const studyNotes = (config: Config, study: Config['studies'][number]): readonly 
     say(`${species.name} expects no bands, so which band is which is worked out from the ion alone`)
   if (species !== null && species.bands.length === 1 && bandsMatter(species.ion))
     say(`${species.name} expects one band only: B cannot be derived from it`)
+  if (study.kind === 'stability' && species !== null && !study.samples.some(({ control }) => control))
+    say('it names no control sample: samples that age alike look as if the instrument had moved (common-change)')
   if (study.tell.length === 0) say('nobody is told; its alarms are only listed')
   if (
     species !== null &&

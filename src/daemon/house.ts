@@ -14,6 +14,7 @@ import { startPool } from './pool.ts'
 import { sendDue } from './post.ts'
 import { loadRoom, type RoomInForce } from './room.ts'
 import { followClock } from './service.ts'
+import { followCommonChanges } from './suppress.ts'
 
 export type Stop = () => void | Promise<void>
 
@@ -79,6 +80,7 @@ export const openHouse = (configFolder: string, log: Logger) => {
     minding('overdue', 'what the clock decides could not be judged', () => {
       judgeOverdueSamples(stations)
       followClock(stations)
+      followCommonChanges(stations)
       escalate(stations)
     })
 

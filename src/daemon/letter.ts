@@ -32,8 +32,25 @@ export const tellTogether = (told: readonly AlarmFacts[], stations: Stations): v
       .filter(({ event }) => (event === 'returned') === isReturn)
       .toSorted((a, b) => URGENCY[b.priority] - URGENCY[a.priority] || a.alarm - b.alarm)
     if (first === undefined) continue
-    addLetter({ ...first, also: others.map((other) => `${messageOf(other)} (alarm ${other.alarm})`) }, stations)
+    addLetter(
+      {
+        ...first,
+        also: others.map((other) => `${messageOf(other)} (alarm ${other.alarm})`),
+        alsoAlarms: others.map(({ alarm }) => alarm),
+      },
+      stations,
+    )
     for (const { alarm } of others)
       stations.store.alarms.event(alarm, stations.now(), 'told', 'tendq', `in the letter of alarm ${first.alarm}`)
   }
+}
+
+/** What rings together, a letter a subject. */
+export const tellBySubject = (told: readonly AlarmFacts[], stations: Stations): void => {
+  const subjectOf = ({ of, subject }: AlarmFacts): string => `${of} ${subject}`
+  for (const subject of new Set(told.map(subjectOf)))
+    tellTogether(
+      told.filter((facts) => subjectOf(facts) === subject),
+      stations,
+    )
 }

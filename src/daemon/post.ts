@@ -1,7 +1,7 @@
 import type { Logger } from 'pino'
 import type { MailSettings } from '../config/types.ts'
 import { composeLetter, createPost, hasExpired, nextAttemptDelayMs, resolveSecret } from '../mail/index.ts'
-import type { Delivery } from '../mail/types.ts'
+import type { Delivery, LetterFacts } from '../mail/types.ts'
 import type { Store } from '../store/index.ts'
 import type { WaitingLetter } from '../store/letters.ts'
 
@@ -21,7 +21,9 @@ export const sendDue = async (settings: MailSettings, { store, log, now }: PostO
   const post = createPost(settings, resolveSecret)
   try {
     for (const letter of due) {
-      const delivery = await attempt(post, letter)
+      // a common change may have withdrawn it while the one before was on its way
+      if (!store.letters.isWaiting(letter.id)) continue
+      const delivery = await attempt(post, { ...letter, facts: freshest(letter.facts, store) })
       note(letter, delivery, { store, log, now })
       // a server that is down is down for the next letter too: let those wait with their own time unchanged
       if (delivery.kind === 'later' && delivery.unreachable === true) break
@@ -60,4 +62,11 @@ const note = (letter: WaitingLetter, delivery: Delivery, { store, log, now }: Po
   }
   store.letters.markLater(letter.id, at, at + nextAttemptDelayMs(letter.attempts + 1), delivery.why)
   log.warn({ letter: letter.letter, to: letter.recipient, why: delivery.why }, 'letter waits for the mail server')
+}
+
+/** The alarms that a common change has silenced by the time its letter goes out. */
+const freshest = (facts: LetterFacts, store: Store): LetterFacts => {
+  if (facts.kind !== 'alarm' || facts.samples === undefined) return facts
+  const since = store.alarms.get(facts.alarm)?.raisedAt ?? 0
+  return { ...facts, silenced: [...new Set(store.alarms.notes(facts.alarm, 'suppresses', since))] }
 }

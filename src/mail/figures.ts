@@ -27,8 +27,12 @@ const NUMBERED: Readonly<Record<string, string>> = {
   height: 'height of band %',
 }
 
+/** How the evidence of a common change is named: `common shift of nu1`. */
+export const COMMON = 'common shift of '
+
 /** `nu1` → `ν1`, `delta_o` → `Δo`; a name without a label stays as the rule writes it. */
 export const labelOf = (name: string): string => {
+  if (name.startsWith(COMMON)) return `${COMMON}${labelOf(name.slice(COMMON.length))}`
   const numbered = /^(nu|max|width|height)(\d)$/.exec(name)
   return numbered === null ? (LABELS[name] ?? oneLine(name, 60)) : NUMBERED[numbered[1]!]!.replace('%', numbered[2]!)
 }

@@ -23,7 +23,12 @@ const composeTest = ({ room, at }: TestFacts): LetterText =>
     paragraph(NO_SAFETY_SYSTEM),
   ])
 
-const EVENT = { raised: '', returned: 'back to normal: ', 're-alarmed': 'still in alarm: ' } as const
+const EVENT = {
+  raised: '',
+  returned: 'back to normal: ',
+  're-alarmed': 'still in alarm: ',
+  suppressed: 'explained by a common change: ',
+} as const
 const PRIORITY = { high: 'High', medium: 'Medium', low: 'Low' } as const
 
 /** Sample, what, how much: enough to decide from the list of letters whether to open this one. */
@@ -44,6 +49,8 @@ const composeAlarm = (facts: AlarmFacts): LetterText =>
       command(oneLine(facts.ruleText, 1000)),
     ]),
     ...section('At the same time', listOf(facts.also ?? [])),
+    ...section('Samples', listOf(facts.samples ?? [])),
+    ...section('Silent because of this alarm', silencedOf(facts)),
     ...section('Likely cause', causeOf(facts)),
     ...section('Check first', listOf(facts.check)),
     ...section('Cautions', listOf(facts.cautions)),
@@ -63,7 +70,7 @@ const section = (title: string, blocks: readonly Block[]): readonly Block[] =>
 const listOf = (items: readonly string[]): readonly Block[] =>
   items.length === 0 ? [] : [{ kind: 'list', items: items.map((item) => oneLine(item, 1000)) }]
 
-const openingOf = ({ event, of, subject, ruleTitle, priority, spectra, since }: AlarmFacts): string => {
+const openingOf = ({ event, of, subject, ruleTitle, priority, spectra, since, explainedBy }: AlarmFacts): string => {
   const name = `${of} ${oneLine(subject, 120)}`
   const title = oneLine(ruleTitle, 120)
   const from = since === null ? '' : ` since ${oneLine(since, 60)}`
@@ -73,10 +80,22 @@ const openingOf = ({ event, of, subject, ruleTitle, priority, spectra, since }: 
       return `${PRIORITY[priority]} priority. For the ${name} the rule “${title}” rings${from}${seen}.`
     case 're-alarmed':
       return `${PRIORITY[priority]} priority. For the ${name} the rule “${title}” still rings${from}${seen}.`
+    case 'suppressed':
+      return `You had a letter about the ${name}: “${title}”. What it told is explained by ${oneLine(explainedBy ?? 'another alarm', 200)}. The alarm is suppressed by design until that is over, and rings again should the ${of} depart from the others.`
     case 'returned':
       return `For the ${name} the rule “${title}” no longer rings. An alarm that nobody has acknowledged stays on the list until someone does.`
   }
 }
+
+const silencedOf = ({ silenced = [] }: AlarmFacts): readonly Block[] =>
+  silenced.length === 0
+    ? []
+    : [
+        paragraph(
+          'These alarms tell no more than this one and are suppressed by design. One that departs rings by itself.',
+        ),
+        ...listOf(silenced),
+      ]
 
 const figuresOf = ({ evidence, parameters }: AlarmFacts): readonly Block[] => {
   const told = new Set(evidence.map(({ name }) => name))

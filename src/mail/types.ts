@@ -4,7 +4,7 @@ import type { Evidence } from '../rules/types.ts'
 /** Facts of an alarm, frozen when it changed; text is made from them at sending. JSON-serialisable. */
 export interface AlarmFacts {
   readonly kind: 'alarm'
-  readonly event: 'raised' | 'returned' | 're-alarmed'
+  readonly event: 'raised' | 'returned' | 're-alarmed' | 'suppressed'
   readonly room: string
   readonly alarm: number
   readonly rule: string
@@ -35,6 +35,14 @@ export interface AlarmFacts {
   readonly file: string | null
   /** Other alarms of the same subject that the same spectrum rang, a line each. */
   readonly also?: readonly string[]
+  /** Numbers of those alarms. */
+  readonly alsoAlarms?: readonly number[]
+  /** Of a common change: each sample and how far it moved, a line each. */
+  readonly samples?: readonly string[]
+  /** Of a common change: alarms that say the same and are silent therefore, a line each. */
+  readonly silenced?: readonly string[]
+  /** Of a suppressed alarm: the alarm that explains it, in words. */
+  readonly explainedBy?: string
 }
 
 export interface TestFacts {
