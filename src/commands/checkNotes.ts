@@ -7,6 +7,7 @@ import type { Config, Secret } from '../config/types.ts'
 export const notesOf = (config: Config): readonly string[] => [
   ...config.instruments.flatMap(({ name, dropFolder }) => faultOfFolder(name, dropFolder)),
   ...mailNotes(config),
+  ...quietNotes(config),
   ...(config.web?.token ? secretNotes('the token of the web page', config.web.token) : []),
   ...config.studies.flatMap((study) => studyNotes(config, study)),
   ...ruleNotes(config),
@@ -14,6 +15,13 @@ export const notesOf = (config: Config): readonly string[] => [
     .filter(({ name }) => !config.studies.some(({ species }) => species === name))
     .map(({ name }) => `species ${name}: no study is of it`),
 ]
+
+const quietNotes = ({ quiet, keeper, studies }: Config): readonly string[] => {
+  const people = new Set([...keeper, ...studies.flatMap(({ tell, escalate }) => [...tell, ...(escalate?.to ?? [])])])
+  return quiet
+    .filter(({ to }) => !people.has(to))
+    .map(({ to }) => `quiet hours of ${to}: nobody writes to this address`)
+}
 
 const faultOfFolder = (instrument: string, folder: string): readonly string[] => {
   const found = statSync(folder, { throwIfNoEntry: false })

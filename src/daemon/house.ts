@@ -4,6 +4,7 @@ import { EXIT, FaultError, sayFault } from '../fault.ts'
 import { startIntake } from '../intake/index.ts'
 import type { DropFolder, Intake, IntakeEvent, IntakeOptions, IntakePorts } from '../intake/types.ts'
 import { holdDataFolder, openStore, storeOn } from '../store/index.ts'
+import { noteDaily, writeDaily } from './daily.ts'
 import { escalate } from './escalate.ts'
 import { singleFlight } from './flight.ts'
 import { followDecisions } from './follow.ts'
@@ -63,6 +64,8 @@ export const openHouse = (configFolder: string, log: Logger) => {
     },
   }
 
+  noteDaily(stations)
+
   const working = singleFlight(async () => {
     const kept = await minding('storage', 'outcomes could not be kept, they will be tried again', async () => {
       await processPending(stations)
@@ -73,7 +76,7 @@ export const openHouse = (configFolder: string, log: Logger) => {
 
   const sending = singleFlight(async () => {
     const { mail } = inForce.config
-    if (mail !== null) await minding('mail', 'letters could not be sent', () => sendDue(mail, { store, log, now }))
+    if (mail !== null) await minding('mail', 'letters could not be sent', () => sendDue(mail, stations))
   })
 
   const judgeTimes = (): Promise<boolean> =>
@@ -82,6 +85,7 @@ export const openHouse = (configFolder: string, log: Logger) => {
       followClock(stations)
       followCommonChanges(stations)
       escalate(stations)
+      writeDaily(stations)
     })
 
   let heard = 0
@@ -162,6 +166,7 @@ export const openHouse = (configFolder: string, log: Logger) => {
         trouble('restart', needsRestart(fresh.room, inForce))
         inForce = fresh.room
         store.records.configurationInForce(inForce.config, now())
+        noteDaily(stations)
         log.info({ why, sha256: inForce.config.sha256 }, 'a new configuration is in force')
       }
       note()

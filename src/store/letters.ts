@@ -80,6 +80,17 @@ export const letters = (db: Db) => {
     `SELECT DISTINCT t.recipient FROM letter_recipient t JOIN letter l ON l.id = t.letter
       WHERE l.alarm = ? AND l.created_at >= ? AND (t.state = 'sent' OR t.told_in IS NOT NULL)`,
   )
+  const toldSince = db.prepare<[number], { n: number | null }>(
+    `SELECT sum(1 + coalesce(json_array_length(facts, '$.alsoAlarms'), 0)) AS n FROM letter
+      WHERE created_at > ? AND alarm IS NOT NULL AND facts ->> '$.event' = 'raised' AND ${TOLD}`,
+  )
+  const waitingAlarms = db.prepare<
+    [],
+    { id: number; recipient: string; alarm: number; subject: string; facts: string }
+  >(
+    `SELECT t.id, t.recipient, l.alarm, l.subject, l.facts FROM letter_recipient t JOIN letter l ON l.id = t.letter
+      WHERE t.state = 'waiting' AND l.alarm IS NOT NULL ORDER BY t.id`,
+  )
   const stateOf = db.prepare<[number], { state: string }>(`SELECT state FROM letter_recipient WHERE id = ?`)
   const hold = db.prepare(
     `UPDATE letter_recipient SET next_attempt_at = ?, held = ? WHERE id = ? AND state = 'waiting'`,
@@ -144,6 +155,18 @@ export const letters = (db: Db) => {
       alarm: number,
     ): readonly { readonly id: number; readonly recipient: string; readonly facts: LetterFacts }[] =>
       waitingOfAlarm.all(alarm).map((row) => ({ ...row, facts: JSON.parse(row.facts) as LetterFacts })),
+
+    /** How many alarms letters have told of, or will, that rang since a time. */
+    raisedSince: (since: number): number => toldSince.get(since)?.n ?? 0,
+
+    /** Every letter about an alarm that waits, oldest first. */
+    waitingAlarms: (): readonly {
+      readonly id: number
+      readonly recipient: string
+      readonly alarm: number
+      readonly subject: string
+      readonly facts: AlarmFacts
+    }[] => waitingAlarms.all().map((row) => ({ ...row, facts: JSON.parse(row.facts) as AlarmFacts })),
 
     /** Who has had a letter about an alarm that was written since a time. */
     sentTo: (alarm: number, since: number): readonly string[] =>
