@@ -5,6 +5,7 @@ import type { Store } from '../store/index.ts'
 import type { WaitingLetter } from '../store/letters.ts'
 import { foldFlood } from './digest.ts'
 import { addLetter } from './letter.ts'
+import { pictureFor } from './picture.ts'
 import type { Stations } from './pipeline.ts'
 
 /** Letters tried in one go; the next go follows at once while some are due. */
@@ -43,14 +44,15 @@ const isHeld = ({ id, recipient, facts }: WaitingLetter, { store, room, now }: S
 const attempt = async (
   post: ReturnType<typeof createPost>,
   letter: WaitingLetter,
-  { store }: Stations,
+  stations: Stations,
 ): Promise<Delivery> => {
   try {
+    const facts = freshest(letter.facts, stations.store)
     return await post.send({
       to: letter.recipient,
       messageId: letter.messageId,
       inReplyTo: letter.inReplyTo,
-      text: composeLetter(freshest(letter.facts, store)),
+      text: composeLetter(facts, await pictureFor(facts, stations)),
       date: new Date(letter.createdAt),
     })
   } catch (error) {

@@ -38,7 +38,7 @@ export const labelOf = (name: string): string => {
 }
 
 /** `cm^-1` → `cm⁻¹`; a plain number has no unit. */
-const sayUnit = (unit: string): string =>
+export const sayUnit = (unit: string): string =>
   unit === '1' || unit === '' ? '' : ` ${oneLine(unit, 20).replace('^-1', '⁻¹')}`
 
 /** Digits after the point that show two significant digits of the uncertainty (GUM 7.2.6). */
