@@ -141,7 +141,7 @@ describe('a drawing of a trend', () => {
     expect(svg.match(/<path [^>]*l5 5l-5 5/g)).toHaveLength(3)
     expect(svg).toContain('reference')
     expect(svg).toContain('days since 2026-03-02 09:00 UTC')
-    expect(svg).toContain('a rule rang on 3 of them')
+    expect(svg).toContain('the rule rang on 3 of them')
     expect(clashes(svg)).toEqual([])
     expect(svg).not.toMatch(/NaN|Infinity|undefined/)
   })
