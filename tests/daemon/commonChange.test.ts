@@ -30,13 +30,16 @@ describe('samples that moved together', () => {
   it('are one alarm; who departs rings by itself; letters not yet sent are withdrawn, and those sent get a follow-up', async () => {
     const mail = await mailReceiver()
     const room = testRoom(mail.port)
-    room.write('studies/aging.yaml', room.read('studies/aging.yaml').replace('first: 3', 'first: 2'))
+    room.write(
+      'studies/aging.yaml',
+      room
+        .read('studies/aging.yaml')
+        .replace('first: 3', 'values: { nu1: [ 19531 cm^-1, 5 cm^-1 ], nu2: [ 26667 cm^-1, 5 cm^-1 ] }'),
+    )
     room.write('rules/bands.yaml', room.read('rules/bands.yaml').replace('persist: 2', 'persist: 1'))
     const standing = () =>
       room.rows<{ subject: string }>(`SELECT subject FROM alarm_list WHERE state = 'unacknowledged' ORDER BY subject`)
-    for (const hour of [0, 6]) drop(room, SAMPLES, hour, 0)
-    await room.run(['run', '--once'])
-    drop(room, SAMPLES, 9, 0)
+    drop(room, SAMPLES, 6, 0)
     await room.run(['run', '--once'])
     drop(room, ['AGE-1'], 12, 3)
     await room.run(['run', '--once'])
@@ -65,7 +68,7 @@ describe('samples that moved together', () => {
     expect(told).toHaveLength(3)
     const letter = back.letters.find((raw) => raw.includes('uv1=3A_Samples'))!
     const text = partOf(letter, 'text/plain').replace(/\s+/g, ' ')
-    expect(text).toMatch(/common shift of ν1 0 nm (2\.9|3\.0)\d+ ± 0\.\d+ nm/)
+    expect(text).toMatch(/common shift of ν1 0 nm (2\.[89]|3\.[01])\d+ ± 0\.\d+ nm/)
     for (const sample of SAMPLES) expect(text).toMatch(new RegExp(`alarm \\d+, ${sample}: First band has moved`))
     expect(text).toContain('Your safety data sheet and local rules come first.')
     expect((await room.run(['alarms', 'show', String(common!.id)])).stdout).toMatch(
@@ -84,5 +87,5 @@ describe('samples that moved together', () => {
     expect(standing()).toEqual([])
     expect(room.rows(`SELECT * FROM alarm_list WHERE state = 'suppressed-by-design'`)).toEqual([])
     expect(subjectsOf(back.letters.slice(before)).every((subject) => subject.includes('back to normal'))).toBe(true)
-  })
+  }, 60_000)
 })
