@@ -7,14 +7,21 @@ import type { Config, Secret } from '../config/types.ts'
 export const notesOf = (config: Config): readonly string[] => [
   ...config.instruments.flatMap(({ name, dropFolder }) => faultOfFolder(name, dropFolder)),
   ...mailNotes(config),
+  ...quietNotes(config),
   ...(config.web?.token ? secretNotes('the token of the web page', config.web.token) : []),
   ...config.studies.flatMap((study) => studyNotes(config, study)),
   ...ruleNotes(config),
-  'rule common-change: this version does not judge it yet; samples that move together each ring for themselves',
   ...config.species
     .filter(({ name }) => !config.studies.some(({ species }) => species === name))
     .map(({ name }) => `species ${name}: no study is of it`),
 ]
+
+const quietNotes = ({ quiet, keeper, studies }: Config): readonly string[] => {
+  const people = new Set([...keeper, ...studies.flatMap(({ tell, escalate }) => [...tell, ...(escalate?.to ?? [])])])
+  return quiet
+    .filter(({ to }) => !people.has(to))
+    .map(({ to }) => `quiet hours of ${to}: nobody writes to this address`)
+}
 
 const faultOfFolder = (instrument: string, folder: string): readonly string[] => {
   const found = statSync(folder, { throwIfNoEntry: false })
@@ -58,6 +65,8 @@ const studyNotes = (config: Config, study: Config['studies'][number]): readonly 
     say(`${species.name} expects no bands, so which band is which is worked out from the ion alone`)
   if (species !== null && species.bands.length === 1 && bandsMatter(species.ion))
     say(`${species.name} expects one band only: B cannot be derived from it`)
+  if (study.kind === 'stability' && species !== null && !study.samples.some(({ control }) => control))
+    say('it names no control sample: samples that age alike look as if the instrument had moved (common-change)')
   if (study.tell.length === 0) say('nobody is told; its alarms are only listed')
   if (
     species !== null &&

@@ -145,11 +145,15 @@ const sayCondition = ({ condition }: RuleDefinition): string => {
   }
 }
 
-const sayMail = ({ mail, keeper, studies }: Config): readonly string[] => [
+const sayMail = ({ mail, keeper, studies, dailyAt, quiet }: Config): readonly string[] => [
   mail === null
     ? 'no letters: no mail server is named'
     : `from ${mail.from} through ${mail.host}:${mail.port} (${mail.security})`,
-  `the room's keeper: ${keeper.join(', ')}`,
+  `the room's keeper: ${keeper.join(', ')}; ${dailyAt === null ? 'no daily letter' : `a daily letter at ${sayClock(dailyAt)}`}`,
+  ...quiet.map(
+    ({ to, from, until }) =>
+      `${to}: letters wait from ${sayClock(from)} until ${sayClock(until)}, save those of high priority`,
+  ),
   ...studies
     .filter(({ tell }) => tell.length > 0)
     .map(({ name, tell, escalate }) =>
@@ -158,6 +162,9 @@ const sayMail = ({ mail, keeper, studies }: Config): readonly string[] => [
         : `${name}: ${tell.join(', ')}; after ${sayTime(escalate.afterMs)} unacknowledged also ${escalate.to.join(', ')}`,
     ),
 ]
+
+const sayClock = (minutes: number): string =>
+  `${String(Math.floor(minutes / 60)).padStart(2, '0')}:${String(minutes % 60).padStart(2, '0')}`
 
 const UNITS = [
   ['d', 86_400_000],

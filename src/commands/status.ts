@@ -53,7 +53,10 @@ const printHealth = (health: Health): void => {
   )
   if (health.repeated > 0)
     printLine(`repeats      ${health.repeated} files of the last day held bytes that had come before`)
-  printLine(`letters      ${health.letters.waiting} wait, ${health.letters.failed} given up`)
+  printLine(
+    `letters      ${health.letters.waiting} wait${health.letters.held > 0 ? ` (${health.letters.held} for the end of quiet hours or the next digest)` : ''}, ${health.letters.failed} given up`,
+  )
+  printLine(`daily letter ${health.daily === null ? 'turned off' : `last sent at ${health.daily.last_sent_at ?? '–'}`}`)
   printLine(`alarms       ${health.alarms} not back to normal`)
   list(
     'instruments',

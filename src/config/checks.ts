@@ -45,7 +45,7 @@ export const unknownName = (kind: string, name: string, known: readonly string[]
 
 /** Mail and web page: nothing in clear text, nothing without a token, beyond this machine. */
 export const checkRoom = (room: FilePart<RoomFile>): readonly Fault[] => {
-  const { mail, web } = room.value
+  const { mail, web, quiet = [] } = room.value
   const faults: Fault[] = []
   const add = (steps: Path, code: string, what: string, remedy: string) =>
     faults.push(faultAt(room, steps, code, { what, remedy }))
@@ -70,6 +70,10 @@ export const checkRoom = (room: FilePart<RoomFile>): readonly Fault[] => {
       'a user without a password',
       'say where it is kept: `password: { credential: NAME }`',
     )
+  quiet.forEach(({ from, until }, i) => {
+    if (from === until)
+      add(['quiet', i, 'until'], 'quiet-hours', 'the quiet hours never end', 'write another end than the beginning')
+  })
   const listen = web === undefined ? null : parseListen(web.listen)
   if (listen?.kind === 'refused') add(['web', 'listen'], 'listen-address', listen.what, listen.remedy)
   if (listen?.kind === 'read' && !isLoopback(listen.host) && web?.token === undefined)

@@ -89,6 +89,8 @@ const build = (
     dataFolder: resolve(root, room.data),
     timeZone: room.timezone,
     keeper: room.keeper,
+    dailyAt: room.daily,
+    quiet: room.quiet,
     mail: toMail(room.mail, root),
     web: toWeb(room.web, root),
     instruments: parts.instruments.map((part) => toInstrument(whole(part), root)),

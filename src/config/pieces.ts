@@ -154,6 +154,25 @@ export const time = () =>
     return reading.kind === 'read' ? read(reading.ms) : reading
   }).meta({ type: 'string', pattern: TIME_PATTERN, examples: ['2026-03-02T09:00:00Z'] })
 
+const CLOCK = /^([01]\d|2[0-3]):[0-5]\d$/
+
+/** A time of day, handed on in minutes after midnight. */
+const minutesOf = (written: string): Read<number> =>
+  CLOCK.test(written)
+    ? read(Number(written.slice(0, 2)) * 60 + Number(written.slice(3)))
+    : refused(`"${written}" is no time of day`, 'write hours and minutes, such as "07:00"')
+
+/** A time of day by the clock of the room, in minutes after midnight. */
+export const clock = () => fromText(minutesOf).meta({ type: 'string', pattern: CLOCK.source, examples: ['07:00'] })
+
+/** A time of day, or `off`: null. */
+export const dailyTime = () =>
+  fromText((written): Read<number | null> => (written === 'off' ? read(null) : minutesOf(written))).meta({
+    type: 'string',
+    pattern: `^(off|${CLOCK.source.slice(1, -1)})$`,
+    examples: ['07:00', 'off'],
+  })
+
 /** An IANA time zone. */
 export const zone = () =>
   fromText((written) => {

@@ -13,6 +13,9 @@ export interface Config {
   readonly dataFolder: string
   readonly timeZone: string
   readonly keeper: readonly string[]
+  /** Minutes after midnight by the room's clock at which the daily letter is written; null: none is. */
+  readonly dailyAt: number | null
+  readonly quiet: readonly QuietHours[]
   readonly mail: MailSettings | null
   readonly web: WebSettings | null
   readonly instruments: readonly Instrument[]
@@ -31,6 +34,13 @@ export interface MailSettings {
   readonly security: 'tls' | 'starttls' | 'none'
   readonly user: string | null
   readonly password: Secret | null
+}
+
+/** Hours in which a recipient's letters wait, in minutes after midnight by the room's clock; may run over midnight. */
+export interface QuietHours {
+  readonly to: string
+  readonly from: number
+  readonly until: number
 }
 
 export interface WebSettings {

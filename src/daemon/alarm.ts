@@ -22,7 +22,7 @@ export interface Judged {
 
 /** Whom an alarm is about. */
 export interface About {
-  readonly of: 'sample' | 'instrument'
+  readonly of: 'sample' | 'instrument' | 'study'
   readonly subject: string
 }
 

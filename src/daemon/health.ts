@@ -1,6 +1,7 @@
 import { ENGINE } from '../analysis/types.ts'
 import { decisions } from '../store/decisions.ts'
 import { type Db, whoHolds } from '../store/index.ts'
+import type { DailyNote } from './daily.ts'
 
 /** What the daemon notes of itself, for `status` and the health page to read from another process. */
 export interface DaemonNote {
@@ -29,9 +30,13 @@ export interface Health extends DaemonNote {
   readonly letters: {
     readonly waiting: number
     readonly failed: number
+    /** Of those that wait: held by quiet hours or for a digest. */
+    readonly held: number
     readonly oldest_waiting: string | null
     readonly last_error: string | null
   }
+  /** The daily letter: null while it is turned off. */
+  readonly daily: { readonly last_sent_at: string | null; readonly last_day: string | null } | null
   readonly alarms: number
   readonly set_aside: readonly {
     readonly instrument: string
@@ -70,8 +75,10 @@ export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
   const letters = db
     .prepare<[], Health['letters']>(
       `SELECT count(*) FILTER (WHERE t.state = 'waiting') AS waiting, count(*) FILTER (WHERE t.state = 'failed') AS failed,
+              count(*) FILTER (WHERE t.state = 'waiting' AND t.held IS NOT NULL) AS held,
               strftime('%Y-%m-%dT%H:%M:%SZ', min(l.created_at) FILTER (WHERE t.state = 'waiting') / 1000, 'unixepoch') AS oldest_waiting,
-              (SELECT last_error FROM letter_recipient WHERE last_error IS NOT NULL ORDER BY id DESC LIMIT 1) AS last_error
+              (SELECT last_error FROM letter_recipient WHERE last_error IS NOT NULL AND state IN ('waiting', 'failed')
+                ORDER BY id DESC LIMIT 1) AS last_error
          FROM letter_recipient t JOIN letter l ON l.id = t.letter`,
     )
     .get()!
@@ -81,6 +88,7 @@ export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
         WHERE outcome = 'rejected' OR (outcome = 'stored' AND reason IS NOT NULL) ORDER BY arrival DESC LIMIT ?`,
     )
     .all(LISTED)
+  const daily = dailyOf(db)
   return {
     ...note.body,
     reasons: [
@@ -103,7 +111,12 @@ export const healthOf = (db: Db, dataFolder: string, now: number): Health => {
         ? [`${count(letters.failed, 'letter was', 'letters were')} given up: ${letters.last_error}`]
         : []),
       ...outdated(db),
+      ...dailyReasons(daily, now),
     ],
+    daily:
+      daily === null
+        ? null
+        : { last_day: daily.day, last_sent_at: daily.sentAt === null ? null : new Date(daily.sentAt).toISOString() },
     daemon,
     spectra: counts.spectra,
     last_stored_at: counts.last,
@@ -135,6 +148,37 @@ const outdated = (db: Db): readonly string[] => {
         `${count(samples, 'sample has', 'samples have')} spectra that an earlier engine analysed, which no rule compares with newer ones: tendq reanalyse --all --keep-recipe`,
       ]
 }
+
+interface Daily {
+  /** Since when one is expected every day. */
+  readonly since: number
+  readonly day: string | null
+  readonly sentAt: number | null
+}
+
+/** A day of 25 hours, and an hour of patience with the mail server. */
+const DAILY_MS = 26 * 3_600_000
+
+const dailyOf = (db: Db): Daily | null => {
+  const said = db.prepare<[], { body: string }>(`SELECT body FROM daemon_state WHERE subject = 'daily'`).get()
+  const since = said === undefined ? null : (JSON.parse(said.body) as DailyNote).since
+  if (since === null) return null
+  const last = db
+    .prepare<[], { day: string | null; sent_at: number | null }>(
+      `SELECT max(d.day) AS day, max(t.sent_at) AS sent_at FROM daily_letter d LEFT JOIN letter_recipient t ON t.letter = d.letter`,
+    )
+    .get()
+  return { since, day: last?.day ?? null, sentAt: last?.sent_at ?? null }
+}
+
+const dailyReasons = (daily: Daily | null, now: number): readonly string[] =>
+  daily === null || now - Math.max(daily.since, daily.sentAt ?? 0) <= DAILY_MS
+    ? []
+    : [
+        daily.sentAt === null
+          ? 'no daily letter has gone out since it is expected: see the letters that wait, and the mail settings'
+          : `no daily letter has gone out since ${new Date(daily.sentAt).toISOString()}`,
+      ]
 
 const count = (n: number, one: string, many: string): string => `${n} ${n === 1 ? one : many}`
 

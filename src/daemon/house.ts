@@ -4,6 +4,7 @@ import { EXIT, FaultError, sayFault } from '../fault.ts'
 import { startIntake } from '../intake/index.ts'
 import type { DropFolder, Intake, IntakeEvent, IntakeOptions, IntakePorts } from '../intake/types.ts'
 import { holdDataFolder, openStore, storeOn } from '../store/index.ts'
+import { noteDaily, writeDaily } from './daily.ts'
 import { escalate } from './escalate.ts'
 import { singleFlight } from './flight.ts'
 import { followDecisions } from './follow.ts'
@@ -14,6 +15,7 @@ import { startPool } from './pool.ts'
 import { sendDue } from './post.ts'
 import { loadRoom, type RoomInForce } from './room.ts'
 import { followClock } from './service.ts'
+import { followCommonChanges } from './suppress.ts'
 
 export type Stop = () => void | Promise<void>
 
@@ -62,6 +64,8 @@ export const openHouse = (configFolder: string, log: Logger) => {
     },
   }
 
+  noteDaily(stations)
+
   const working = singleFlight(async () => {
     const kept = await minding('storage', 'outcomes could not be kept, they will be tried again', async () => {
       await processPending(stations)
@@ -72,14 +76,16 @@ export const openHouse = (configFolder: string, log: Logger) => {
 
   const sending = singleFlight(async () => {
     const { mail } = inForce.config
-    if (mail !== null) await minding('mail', 'letters could not be sent', () => sendDue(mail, { store, log, now }))
+    if (mail !== null) await minding('mail', 'letters could not be sent', () => sendDue(mail, stations))
   })
 
   const judgeTimes = (): Promise<boolean> =>
     minding('overdue', 'what the clock decides could not be judged', () => {
       judgeOverdueSamples(stations)
       followClock(stations)
+      followCommonChanges(stations)
       escalate(stations)
+      writeDaily(stations)
     })
 
   let heard = 0
@@ -160,6 +166,7 @@ export const openHouse = (configFolder: string, log: Logger) => {
         trouble('restart', needsRestart(fresh.room, inForce))
         inForce = fresh.room
         store.records.configurationInForce(inForce.config, now())
+        noteDaily(stations)
         log.info({ why, sha256: inForce.config.sha256 }, 'a new configuration is in force')
       }
       note()

@@ -5,15 +5,17 @@ import { ruleCovers } from '../config/index.ts'
 import type { AlarmFacts } from '../mail/types.ts'
 import { isMeasured, type JudgedRule, judgeOccasion, lookBackOf } from '../rules/judgeOccasion.ts'
 import type { CompiledRule, Outcome } from '../rules/types.ts'
+import { departuresOf } from '../series/commonChange.ts'
 import type { Standing, Window } from '../series/types.ts'
 import type { StoredArrival } from '../store/arrivals.ts'
 import type { JudgedAs } from '../store/judgements.ts'
 import { type About, advanceAlarm } from './alarm.ts'
+import { judgeCommonChange } from './commonChange.ts'
 import type { Subject } from './context.ts'
-import { tellTogether } from './letter.ts'
+import { tellBySubject, tellTogether } from './letter.ts'
 import { occasionsOfRows } from './occasions.ts'
 import type { Stations } from './pipeline.ts'
-import { referenceStateOf } from './reference.ts'
+import { windowOf } from './window.ts'
 
 /** A spectrum that was just stored with its analysis. */
 export interface JustKept {
@@ -29,11 +31,12 @@ export interface JustKept {
 /** Every rule that concerns this spectrum's sample or instrument, inside the transaction that keeps it. */
 export const judge = (kept: JustKept, stations: Stations): void => {
   const rules = stations.room().rules.filter(({ definition }) => ruleCovers(definition, kept.subject.study.name))
-  judgeSample(
+  const told = judgeSample(
     rules.filter(({ definition }) => definition.of === 'sample'),
     kept,
     stations,
   )
+  tellBySubject(judgeCommonChange(kept, told, stations), stations)
   judgeInstrument(
     rules.filter(({ definition }) => definition.of === 'instrument'),
     kept,
@@ -41,13 +44,16 @@ export const judge = (kept: JustKept, stations: Stations): void => {
   )
 }
 
-const judgeSample = (rules: readonly CompiledRule[], kept: JustKept, stations: Stations): void => {
-  const window = windowOf(kept, rules.filter(isMeasured), stations)
-  const about = { of: 'sample', subject: kept.subject.sample } as const
-  const told = judgeOccasion(rules, window, standingOf(kept)).flatMap(
+const judgeSample = (rules: readonly CompiledRule[], kept: JustKept, stations: Stations): readonly AlarmFacts[] => {
+  const { subject, recipe, identity, spectrum } = kept
+  const window = windowOf(subject, recipe, identity.measuredAt, rules.filter(isMeasured), stations)
+  const newest = window.occasions.at(-1)
+  if (newest !== undefined)
+    stations.store.departures.add(spectrum, subject.sample, departuresOf(newest, window.reference))
+  const about = { of: 'sample', subject: subject.sample } as const
+  return judgeOccasion(rules, window, standingOf(kept)).flatMap(
     (judged) => settle(judged, window, kept, about, stations) ?? [],
   )
-  tellTogether(told, stations)
 }
 
 const judgeInstrument = (rules: readonly CompiledRule[], kept: JustKept, stations: Stations): void => {
@@ -76,28 +82,6 @@ const instrumentWindow = (kept: JustKept, rules: readonly CompiledRule[], { stor
     temperatureC: null,
     pathMm: null,
     concentrationMolPerL: null,
-    medium: kept.subject.context.prepare.medium,
-  }
-}
-
-const windowOf = (kept: JustKept, rules: readonly CompiledRule[], stations: Stations): Window => {
-  const { store } = stations
-  const { sample, instrument, study } = kept.subject
-  const lookBack = lookBackOf(rules)
-  const of = { sample, instrument: instrument.name, recipe: kept.recipe, engine: ENGINE }
-  // an occasion may hold several replicates: look back on more spectra than occasions
-  const rows = store.analyses.window(
-    of,
-    kept.identity.measuredAt,
-    lookBack * (study.replicatesWithinMs === null ? 1 : 6),
-  )
-  return {
-    occasions: occasionsOfRows(rows, kept.subject, store),
-    reference: referenceStateOf(kept.subject, stations),
-    began: study.began ?? store.spectra.firstMeasuredAt(sample),
-    temperatureC: study.temperatureC,
-    pathMm: study.pathMm,
-    concentrationMolPerL: study.concentrationMolPerL,
     medium: kept.subject.context.prepare.medium,
   }
 }

@@ -3,7 +3,7 @@ import { stepAlarm } from '../alarms/index.ts'
 import type { AlarmFacts } from '../mail/types.ts'
 import { type AlarmKey, lifeOf, type StoredAlarm, withLife } from '../store/alarms.ts'
 import type { ServicePeriod, ServiceSubject } from '../store/decisions.ts'
-import { tellTogether } from './letter.ts'
+import { tellBySubject } from './letter.ts'
 import type { Stations } from './pipeline.ts'
 import type { UntoldFacts } from './tell.ts'
 
@@ -79,7 +79,11 @@ export const followService = (
 }
 
 /** What to say of an alarm that has been silent: that it rings, or that it has returned since people last heard of it. */
-const whatIsSo = (alarm: StoredAlarm, { store }: Stations, factsNow: (() => UntoldFacts) | null): AlarmFacts | null => {
+export const whatIsSo = (
+  alarm: StoredAlarm,
+  { store }: Stations,
+  factsNow: (() => UntoldFacts) | null,
+): AlarmFacts | null => {
   const last = store.letters.last(alarm.id)
   if (alarm.active) {
     const facts = factsNow?.() ?? last?.facts ?? null
@@ -108,15 +112,9 @@ export const followClock = (stations: Stations): void => {
     ].flatMap((facts) => facts ?? [])
     const untold = store.alarms.standing().flatMap((alarm) => untoldOf(alarm, stations) ?? [])
     const news = [...told, ...untold.filter(({ alarm }) => !told.some((one) => one.alarm === alarm))]
-    for (const subject of new Set(news.map(subjectOf)))
-      tellTogether(
-        news.filter((facts) => subjectOf(facts) === subject),
-        stations,
-      )
+    tellBySubject(news, stations)
   })
 }
-
-const subjectOf = ({ of, subject }: AlarmFacts): string => `${of} ${subject}`
 
 const alarmsInQuestion = (at: number, { store }: Stations): readonly StoredAlarm[] =>
   store.decisions.periodsNotOver(at).some(({ since }) => since <= at)

@@ -35,7 +35,8 @@ export const ruleText = ({ condition }: RuleDefinition): string => {
 const WORDS = {
   unjudged: 'a spectrum could not be fitted, or a rule could not decide',
   'not-this-species': 'the spectrum does not look like its species',
-  'common-change': 'samples moved together',
+  'common-change':
+    'samples moved by the same amount: more than the instrument may, or two of their own alarms ring for it',
 } as const
 
 /** What a letter says. `row`: times of the occasions on which the rule rang in a row, newest first. */

@@ -1,5 +1,5 @@
 import type { FigureRow } from './figures.ts'
-import { escapeHtml } from './plain.ts'
+import { escapeHtml, oneLine } from './plain.ts'
 
 /** A letter is written once, as blocks, and printed twice, so that text and HTML say the same. */
 export type Block =
@@ -8,6 +8,17 @@ export type Block =
   | { readonly kind: 'list'; readonly items: readonly string[] }
   | { readonly kind: 'figures'; readonly rows: readonly FigureRow[] }
   | { readonly kind: 'command'; readonly text: string }
+  | { readonly kind: 'picture'; readonly cid: string; readonly alt: string; readonly widthPx: number }
+
+export const paragraph = (text: string): Block => ({ kind: 'paragraph', text })
+export const command = (text: string): Block => ({ kind: 'command', text })
+
+/** A heading with what stands below it; nothing where there is nothing to stand there. */
+export const section = (title: string, blocks: readonly Block[]): readonly Block[] =>
+  blocks.length === 0 ? [] : [{ kind: 'heading', text: title }, ...blocks]
+
+export const listOf = (items: readonly string[]): readonly Block[] =>
+  items.length === 0 ? [] : [{ kind: 'list', items: items.map((item) => oneLine(item, 1000)) }]
 
 const COLUMNS = 76
 const HEADER: FigureRow = { quantity: 'quantity', before: 'reference', now: 'now', change: 'change' }
@@ -48,6 +59,8 @@ const textOf = (block: Block): string => {
       return textTable(block.rows)
     case 'command':
       return `  ${block.text}`
+    case 'picture':
+      return wrap(`Picture: ${block.alt}.`)
   }
 }
 
@@ -75,12 +88,14 @@ const htmlOf = (block: Block): string => {
       return `<ul style="margin:.3em 0">${block.items.map((item) => `<li>${escapeHtml(item)}</li>`).join('')}</ul>`
     case 'figures':
       return htmlTable(block.rows)
+    case 'picture':
+      return `<p style="margin:.6em 0"><img src="cid:${escapeHtml(block.cid)}" alt="${escapeHtml(block.alt)}" width="${block.widthPx}" style="max-width:100%;height:auto"></p>`
     case 'command':
       return `<pre style="margin:.3em 0;white-space:pre-wrap">${escapeHtml(block.text)}</pre>`
   }
 }
 
-/** HTML without style sheet, script, link or picture: any mail program shows it. */
+/** HTML without style sheet, script or link; a picture only from within the letter: any mail program shows it. */
 export const printHtml = (title: string, blocks: readonly Block[]): string =>
   `<!DOCTYPE html>\n<html lang="en"><head><meta charset="utf-8"><title>${escapeHtml(title)}</title></head>\n` +
   `<body style="font-family:Georgia,serif;font-size:16px;line-height:1.4;max-width:44em">\n${blocks.map(htmlOf).join('\n')}\n</body></html>\n`

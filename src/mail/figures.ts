@@ -27,14 +27,18 @@ const NUMBERED: Readonly<Record<string, string>> = {
   height: 'height of band %',
 }
 
+/** How the evidence of a common change is named: `common shift of nu1`. */
+export const COMMON = 'common shift of '
+
 /** `nu1` → `ν1`, `delta_o` → `Δo`; a name without a label stays as the rule writes it. */
 export const labelOf = (name: string): string => {
+  if (name.startsWith(COMMON)) return `${COMMON}${labelOf(name.slice(COMMON.length))}`
   const numbered = /^(nu|max|width|height)(\d)$/.exec(name)
   return numbered === null ? (LABELS[name] ?? oneLine(name, 60)) : NUMBERED[numbered[1]!]!.replace('%', numbered[2]!)
 }
 
 /** `cm^-1` → `cm⁻¹`; a plain number has no unit. */
-const sayUnit = (unit: string): string =>
+export const sayUnit = (unit: string): string =>
   unit === '1' || unit === '' ? '' : ` ${oneLine(unit, 20).replace('^-1', '⁻¹')}`
 
 /** Digits after the point that show two significant digits of the uncertainty (GUM 7.2.6). */

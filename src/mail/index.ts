@@ -1,3 +1,4 @@
+export { lastTimeOfDay, quietUntil } from './clock.ts'
 export { composeLetter } from './letter.ts'
 export { createPost, type OutgoingLetter, type Patience, type Post } from './post.ts'
 export { hasExpired, nextAttemptDelayMs } from './retry.ts'

@@ -1,14 +1,28 @@
-import { type Block, printHtml, printText } from './blocks.ts'
+import { type Block, command, listOf, paragraph, printHtml, printText, section } from './blocks.ts'
+import { dailyBlocks, dailySubject, digestBlocks, digestSubject } from './daily.ts'
 import { figureRow, labelOf, sayChange } from './figures.ts'
 import { oneLine } from './plain.ts'
-import type { AlarmFacts, LetterFacts, LetterText, TestFacts } from './types.ts'
+import type { AlarmFacts, LetterFacts, LetterPicture, LetterText, TestFacts } from './types.ts'
 
 const NO_SAFETY_SYSTEM =
   'tendq is no certified safety system: do not rely on it where a missed or late letter could hurt someone. Local rules, the safety data sheet and licensed practice come first.'
 
 /** What is written, in a letter, from the facts frozen when the alarm changed. Pure; says nothing the facts do not hold. */
-export const composeLetter = (facts: LetterFacts): LetterText =>
-  facts.kind === 'test' ? composeTest(facts) : composeAlarm(facts)
+export const composeLetter = (facts: LetterFacts, picture: LetterPicture | null = null): LetterText => {
+  switch (facts.kind) {
+    case 'test':
+      return composeTest(facts)
+    case 'daily':
+      return letter(dailySubject(facts), [...dailyBlocks(facts), paragraph(NO_SAFETY_SYSTEM)])
+    case 'digest':
+      return letter(digestSubject(facts), [...digestBlocks(facts), paragraph(NO_SAFETY_SYSTEM)])
+    case 'alarm':
+      return {
+        ...letter(subjectLine(facts), alarmBlocks(facts, picture)),
+        ...(picture?.kind === 'drawn' ? { picture } : {}),
+      }
+  }
+}
 
 const letter = (subject: string, blocks: readonly Block[]): LetterText => ({
   subject: oneLine(subject, 180),
@@ -23,7 +37,12 @@ const composeTest = ({ room, at }: TestFacts): LetterText =>
     paragraph(NO_SAFETY_SYSTEM),
   ])
 
-const EVENT = { raised: '', returned: 'back to normal: ', 're-alarmed': 'still in alarm: ' } as const
+const EVENT = {
+  raised: '',
+  returned: 'back to normal: ',
+  're-alarmed': 'still in alarm: ',
+  suppressed: 'explained by a common change: ',
+} as const
 const PRIORITY = { high: 'High', medium: 'Medium', low: 'Low' } as const
 
 /** Sample, what, how much: enough to decide from the list of letters whether to open this one. */
@@ -34,36 +53,28 @@ const subjectLine = (facts: AlarmFacts): string => {
   return `[${oneLine(facts.room, 40)}] ${oneLine(facts.subject, 50)}: ${what}${howMuch}`
 }
 
-const composeAlarm = (facts: AlarmFacts): LetterText =>
-  letter(subjectLine(facts), [
-    paragraph(openingOf(facts)),
-    ...section('What moved', figuresOf(facts)),
-    ...section('Which', [{ kind: 'list', items: whichOf(facts) }]),
-    ...section('Rule', [
-      paragraph(`${oneLine(facts.ruleTitle)} (${oneLine(facts.rule, 80)}). It rings when this holds:`),
-      command(oneLine(facts.ruleText, 1000)),
-    ]),
-    ...section('At the same time', listOf(facts.also ?? [])),
-    ...section('Likely cause', causeOf(facts)),
-    ...section('Check first', listOf(facts.check)),
-    ...section('Cautions', listOf(facts.cautions)),
-    ...section('Acknowledge', [
-      paragraph('To say that you have seen this alarm (not that it is mended), on the machine that runs tendq:'),
-      command(`tendq alarms acknowledge ${facts.alarm} --by WHO --note TEXT`),
-    ]),
-    ...section('Note', [paragraph(NO_SAFETY_SYSTEM)]),
-  ])
+const alarmBlocks = (facts: AlarmFacts, picture: LetterPicture | null): readonly Block[] => [
+  paragraph(openingOf(facts)),
+  ...section('What moved', [...figuresOf(facts), ...pictureOf(picture)]),
+  ...section('Which', [{ kind: 'list', items: whichOf(facts) }]),
+  ...section('Rule', [
+    paragraph(`${oneLine(facts.ruleTitle)} (${oneLine(facts.rule, 80)}). It rings when this holds:`),
+    command(oneLine(facts.ruleText, 1000)),
+  ]),
+  ...section('At the same time', listOf(facts.also ?? [])),
+  ...section('Samples', listOf(facts.samples ?? [])),
+  ...section('Silent because of this alarm', silencedOf(facts)),
+  ...section('Likely cause', causeOf(facts)),
+  ...section('Check first', listOf(facts.check)),
+  ...section('Cautions', listOf(facts.cautions)),
+  ...section('Acknowledge', [
+    paragraph('To say that you have seen this alarm (not that it is mended), on the machine that runs tendq:'),
+    command(`tendq alarms acknowledge ${facts.alarm} --by WHO --note TEXT`),
+  ]),
+  ...section('Note', [paragraph(NO_SAFETY_SYSTEM)]),
+]
 
-const paragraph = (text: string): Block => ({ kind: 'paragraph', text })
-const command = (text: string): Block => ({ kind: 'command', text })
-
-const section = (title: string, blocks: readonly Block[]): readonly Block[] =>
-  blocks.length === 0 ? [] : [{ kind: 'heading', text: title }, ...blocks]
-
-const listOf = (items: readonly string[]): readonly Block[] =>
-  items.length === 0 ? [] : [{ kind: 'list', items: items.map((item) => oneLine(item, 1000)) }]
-
-const openingOf = ({ event, of, subject, ruleTitle, priority, spectra, since }: AlarmFacts): string => {
+const openingOf = ({ event, of, subject, ruleTitle, priority, spectra, since, explainedBy }: AlarmFacts): string => {
   const name = `${of} ${oneLine(subject, 120)}`
   const title = oneLine(ruleTitle, 120)
   const from = since === null ? '' : ` since ${oneLine(since, 60)}`
@@ -73,10 +84,29 @@ const openingOf = ({ event, of, subject, ruleTitle, priority, spectra, since }: 
       return `${PRIORITY[priority]} priority. For the ${name} the rule “${title}” rings${from}${seen}.`
     case 're-alarmed':
       return `${PRIORITY[priority]} priority. For the ${name} the rule “${title}” still rings${from}${seen}.`
+    case 'suppressed':
+      return `You had a letter about the ${name}: “${title}”. What it told is explained by ${oneLine(explainedBy ?? 'another alarm', 200)}. The alarm is suppressed by design until that is over, and rings again should the ${of} depart from the others.`
     case 'returned':
       return `For the ${name} the rule “${title}” no longer rings. An alarm that nobody has acknowledged stays on the list until someone does.`
   }
 }
+
+const pictureOf = (picture: LetterPicture | null): readonly Block[] => {
+  if (picture === null) return []
+  if (picture.kind === 'failed')
+    return [paragraph('The picture of the trend could not be drawn; `tendq history` has its figures.')]
+  return [{ kind: 'picture', cid: picture.cid, alt: oneLine(picture.alt, 600), widthPx: picture.widthPx }]
+}
+
+const silencedOf = ({ silenced = [] }: AlarmFacts): readonly Block[] =>
+  silenced.length === 0
+    ? []
+    : [
+        paragraph(
+          'These alarms tell no more than this one and are suppressed by design. One that departs rings by itself.',
+        ),
+        ...listOf(silenced),
+      ]
 
 const figuresOf = ({ evidence, parameters }: AlarmFacts): readonly Block[] => {
   const told = new Set(evidence.map(({ name }) => name))

@@ -78,12 +78,22 @@ const messageOf = (settings: MailSettings, { to, messageId, inReplyTo, text, dat
   subject: oneLine(text.subject, 200),
   text: text.text,
   html: text.html,
+  ...(text.picture === undefined ? {} : { attachments: [attached(text.picture)] }),
   messageId: oneLine(messageId),
   date,
   ...(inReplyTo === null ? {} : { inReplyTo: oneLine(inReplyTo), references: [oneLine(inReplyTo)] }),
   headers: { 'Auto-Submitted': 'auto-generated' }, // RFC 3834, 5: nobody's absence notice answers
   disableFileAccess: true,
   disableUrlAccess: true,
+})
+
+/** Shown inside the letter (RFC 2392), not beside it. */
+const attached = ({ cid, png }: NonNullable<LetterText['picture']>) => ({
+  cid,
+  content: Buffer.from(png),
+  filename: 'trend.png',
+  contentType: 'image/png',
+  contentDisposition: 'inline' as const,
 })
 
 /** One mailbox of RFC 5321 without quoting: nothing that could be read as two. */

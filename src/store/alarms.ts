@@ -116,6 +116,9 @@ export const alarmList = (db: Db) => {
   const happened = db.prepare<[number, string, number], { n: number }>(
     `SELECT count(*) AS n FROM alarm_event WHERE alarm = ? AND event = ? AND at >= ?`,
   )
+  const notes = db.prepare<[number, string, number], { note: string }>(
+    `SELECT note FROM alarm_event WHERE alarm = ? AND event = ? AND at >= ? ORDER BY id`,
+  )
   const putWatch = db.prepare(
     `INSERT INTO watch (rule, of, subject, instrument, active) VALUES (?, ?, ?, ?, ?)
      ON CONFLICT (rule, of, subject, instrument) DO UPDATE SET active = excluded.active`,
@@ -172,6 +175,10 @@ export const alarmList = (db: Db) => {
 
     /** Whether an event of this kind happened to the alarm since a time. */
     happened: (alarm: number, event: string, since: number): boolean => happened.get(alarm, event, since)!.n > 0,
+
+    /** Notes of the events of this kind since a time, oldest first. */
+    notes: (alarm: number, event: string, since: number): readonly string[] =>
+      notes.all(alarm, event, since).map(({ note }) => note),
 
     /** Whether the rule's condition holds on each instrument that measures the subject. */
     watch: ({ rule, of, subject }: AlarmKey): Readonly<Record<string, boolean>> =>

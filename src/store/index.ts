@@ -1,7 +1,9 @@
 import { alarmList } from './alarms.ts'
 import { analyses } from './analyses.ts'
 import { arrivals } from './arrivals.ts'
+import { dailyLetters } from './daily.ts'
 import { decisions } from './decisions.ts'
+import { departures } from './departures.ts'
 import { judgements } from './judgements.ts'
 import { letters } from './letters.ts'
 import type { Db } from './open.ts'
@@ -16,8 +18,10 @@ export const storeOn = (db: Db) => ({
   recipes: recipes(db),
   analyses: analyses(db),
   judgements: judgements(db),
+  departures: departures(db),
   alarms: alarmList(db),
   letters: letters(db),
+  daily: dailyLetters(db),
   records: records(db),
   decisions: decisions(db),
   /** All or nothing, and the write lock from the first statement on. */

@@ -22,6 +22,7 @@ const APPEND_ONLY = [
   'analysis',
   'reference_set',
   'judgement',
+  'departure',
   'alarm_event',
   'decision',
   'decision_followed',
@@ -29,6 +30,7 @@ const APPEND_ONLY = [
   'out_of_service',
   'return_to_service',
   'letter',
+  'daily_letter',
 ] as const
 
 const KEY_OF: Readonly<Record<string, string>> = {
@@ -36,6 +38,7 @@ const KEY_OF: Readonly<Record<string, string>> = {
   content: 'sha256',
   recipe: 'sha256',
   decision_followed: 'decision',
+  daily_letter: 'day',
 }
 
 export const databaseFile = (dataFolder: string): string => join(dataFolder, 'tendq.db')

@@ -25,6 +25,16 @@ describe('every fault is named at its place', () => {
     ])
   })
 
+  test('a time of day that is none, and quiet hours that never end', () => {
+    const at = ROOM.split('\n').findIndex((line) => line.startsWith('daily:')) + 1
+    expect(inRoom('daily: "07:00"', 'daily: 7 am')).toEqual([
+      `tendq.yaml:${at}:8 daily: "7 am" is no time of day; write hours and minutes, such as "07:00"`,
+    ])
+    expect(inRoom('daily: "07:00"', 'quiet: [ { to: a@lab.example, from: "22:00", until: "22:00" } ]')).toEqual([
+      `tendq.yaml:${at}:53 the quiet hours never end; write another end than the beginning`,
+    ])
+  })
+
   test('all of several files at once, in the order of files and lines', () => {
     const faults = fault({
       'tendq.yaml': ROOM.replace('port: 25', 'port: 70000').replace('Europe/Dublin', 'Europe/Dubln'),

@@ -1,4 +1,5 @@
 import { describe, expect, it } from 'vitest'
+import { headersOf, leavesOf, partOf } from '../mail/mailbox.ts'
 import { exited, mailReceiver, spectrumText, testRoom, until } from './house.ts'
 
 /** Chloride replaced by water: both bands move to the blue as the product forms. */
@@ -40,6 +41,16 @@ describe('the daemon', () => {
     ])
     expect(mail.letters[0]).toContain('To: stability@lab.example')
     expect(mail.letters[0]).toMatch(/^Subject: .*AGE-1/m)
+    // the trend stands inside the letter, and is described for who cannot see it
+    const html = partOf(mail.letters[0]!, 'text/html')
+    const [, cid, alt] = /<img src="cid:([^"]+)" alt="([^"]+)"/.exec(html)!
+    expect(alt).toMatch(
+      /^ν1 \/ cm⁻¹: 6 occasions, from \d+.* reference 195\d\d.*; the rule rings beyond 19\d+.* and 19\d+.*; the rule rang on 2 of them$/,
+    )
+    expect(partOf(mail.letters[0]!, 'text/plain').replace(/\s+/g, ' ')).toContain(`Picture: ${alt}.`)
+    const picture = leavesOf(mail.letters[0]!).find((part) => part.includes('image/png'))!
+    expect(headersOf(picture).get('content-id')).toBe(`<${cid}>`)
+    expect(headersOf(picture).get('content-disposition')).toContain('inline')
     await until(
       'the letter is noted as sent',
       () => room.rows(`SELECT * FROM letters WHERE state = 'sent'`).length === 1,

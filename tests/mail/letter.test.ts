@@ -1,6 +1,7 @@
 import fc from 'fast-check'
 import { describe, expect, test } from 'vitest'
 import { composeLetter } from '../../src/mail/index.ts'
+import type { LetterFacts } from '../../src/mail/types.ts'
 import { ALARM } from './facts.ts'
 
 describe('a letter about an alarm', () => {
@@ -55,6 +56,25 @@ describe('a letter about an alarm', () => {
   })
 })
 
+describe('the picture in a letter', () => {
+  const picture = {
+    kind: 'drawn',
+    cid: 'trend.7@tendq',
+    png: new Uint8Array(),
+    alt: 'ν1 "<b>": 3 occasions',
+    widthPx: 620,
+  } as const
+  test('comes from within the letter, and is told in words in the text', () => {
+    const { text, html } = composeLetter(ALARM, picture)
+    expect(html).toContain('<img src="cid:trend.7@tendq" alt="ν1 &quot;&lt;b&gt;&quot;: 3 occasions" width="620"')
+    expect(text).toContain('Picture: ν1 "<b>": 3 occasions.')
+  })
+  test('is missed aloud where it could not be drawn, and not where there is none to draw', () => {
+    expect(composeLetter(ALARM, { kind: 'failed', why: 'x' }).text).toContain('could not be drawn')
+    expect(composeLetter(ALARM).text).not.toContain('could not be drawn')
+  })
+})
+
 describe('names from outside', () => {
   const hostile = fc.oneof(
     fc.string({ unit: 'binary', maxLength: 60 }),
@@ -67,6 +87,44 @@ describe('names from outside', () => {
       'A\u2028B\u202Egnp.exe\u0000\u0007\u001b[31m',
     ),
   )
+
+  test('cannot open a header or a tag in a daily letter, a digest, or a letter about a common change', () => {
+    const lines = (name: string) => ({
+      ...{ instruments: [name], troubles: [name], alarms: [name], stale: [name], chattering: [name], silent: [name] },
+      ...{ setAside: [name], unknownSamples: [name], undecided: [name], gathering: [name], decisions: [name] },
+    })
+    const lettersOf = (name: string) =>
+      [
+        {
+          ...{ kind: 'daily', room: name, day: name, since: name, until: name, spectra: 1, samples: 1, repeated: 0 },
+          ...{ pending: 0, letters: { sent: 0, waiting: 0, failed: 0 }, ...lines(name) },
+        },
+        { kind: 'digest', room: name, priority: 'low', letters: [{ alarm: 1, subject: name }], cautions: [name] },
+        {
+          ...ALARM,
+          subject: name,
+          samples: [name],
+          silenced: [name],
+          also: [name],
+          event: 'suppressed',
+          explainedBy: name,
+        },
+      ] as const satisfies readonly LetterFacts[]
+    const tags = (html: string) => html.match(/<[^>]*>/g)
+    const plain = lettersOf('x').map((facts) => composeLetter(facts))
+    fc.assert(
+      fc.property(hostile, (name) => {
+        lettersOf(name)
+          .map((facts) => composeLetter(facts))
+          .forEach((letter, i) => {
+            expect(letter.subject).not.toMatch(/[\p{Cc}\p{Cf}\u2028\u2029]/u)
+            expect(letter.text.replaceAll('\n', '')).not.toMatch(/[\p{Cc}\p{Cf}\u2028\u2029]/u)
+            expect(tags(letter.html)).toEqual(tags(plain[i]!.html))
+          })
+      }),
+      { numRuns: 60 },
+    )
+  })
 
   test('cannot open a header, a tag or an attribute', () => {
     fc.assert(

@@ -55,13 +55,19 @@ export const headersOf = (raw: string): ReadonlyMap<string, string> => {
   )
 }
 
+/** The parts of a message that are no parts themselves, header and body. */
+export const leavesOf = (raw: string): readonly string[] => {
+  const boundary = /^multipart\/.*boundary="?([^";]+)"?/.exec(headersOf(raw).get('content-type') ?? '')?.[1]
+  if (boundary === undefined) return [raw]
+  return raw
+    .split(`--${boundary}`)
+    .slice(1, -1)
+    .flatMap((part) => leavesOf(part.replace(/^\r\n/, '')))
+}
+
 /** Body of the first part of that type, its transfer encoding undone. */
 export const partOf = (raw: string, type: string): string => {
-  const boundary = /boundary="([^"]+)"/.exec(headersOf(raw).get('content-type') ?? '')?.[1]
-  const parts = boundary === undefined ? [raw] : raw.split(`--${boundary}`)
-  const part = parts
-    .map((one) => one.replace(/^\r\n/, ''))
-    .find((one) => headersOf(one).get('content-type')?.startsWith(type))
+  const part = leavesOf(raw).find((one) => headersOf(one).get('content-type')?.startsWith(type))
   if (part === undefined) throw new Error(`no part ${type}`)
   const body = part.slice(part.indexOf('\r\n\r\n') + 4)
   const encoding = headersOf(part).get('content-transfer-encoding')

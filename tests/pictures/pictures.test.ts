@@ -137,11 +137,11 @@ describe('a drawing of a trend', () => {
 
   test('has one mark a spectrum, another one where a rule rang, bars where an uncertainty is known, and the reference', () => {
     expect(isWellFormed(svg)).toBe(true)
-    expect(svg.match(/<circle /g)).toHaveLength(9)
+    expect(svg.match(/<circle /g)).toHaveLength(9 + 1) // and the one that the key explains
     expect(svg.match(/<path [^>]*l5 5l-5 5/g)).toHaveLength(3)
     expect(svg).toContain('reference')
     expect(svg).toContain('days since 2026-03-02 09:00 UTC')
-    expect(svg).toContain('a rule rang on 3 of them')
+    expect(svg).toContain('the rule rang on 3 of them')
     expect(clashes(svg)).toEqual([])
     expect(svg).not.toMatch(/NaN|Infinity|undefined/)
   })

@@ -127,6 +127,15 @@ CREATE TABLE judgement (
 ) STRICT;
 CREATE INDEX judgement_by_spectrum ON judgement (spectrum, rule);
 
+-- How far a spectrum's sample was from its reference when it was judged: {quantity: [d, u]} on the scale of the quantity.
+CREATE TABLE departure (
+  id         INTEGER PRIMARY KEY,
+  spectrum   INTEGER NOT NULL REFERENCES spectrum (id),
+  sample     TEXT NOT NULL,
+  departures TEXT NOT NULL
+) STRICT;
+CREATE INDEX departure_by_spectrum ON departure (spectrum, id);
+
 CREATE TABLE alarm (
   id              INTEGER PRIMARY KEY,
   rule            TEXT NOT NULL,
@@ -240,9 +249,22 @@ CREATE TABLE letter_recipient (
   next_attempt_at INTEGER,
   sent_at         INTEGER,
   last_error      TEXT,
+  -- why it waits although nothing went wrong, such as the recipient's quiet hours
+  held            TEXT,
+  -- the letter that tells it in place of this one
+  told_in         INTEGER REFERENCES letter (id),
   UNIQUE (letter, recipient)
 ) STRICT;
 CREATE INDEX letter_recipient_due ON letter_recipient (state, next_attempt_at);
+CREATE INDEX letter_by_alarm ON letter (alarm, id);
+
+-- The daily letter that was written for a day of the room's calendar, with what it covers.
+CREATE TABLE daily_letter (
+  day    TEXT PRIMARY KEY NOT NULL,
+  letter INTEGER NOT NULL REFERENCES letter (id),
+  since  INTEGER NOT NULL,
+  until  INTEGER NOT NULL
+) STRICT, WITHOUT ROWID;
 
 -- What the running daemon last said of itself, one row per subject; `status` reads it.
 CREATE TABLE daemon_state (

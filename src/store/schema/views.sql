@@ -89,5 +89,5 @@ DROP VIEW IF EXISTS letters;
 CREATE VIEW letters AS
 SELECT t.id, l.alarm, t.recipient, l.subject, t.message_id, t.state, t.attempts,
        strftime('%Y-%m-%dT%H:%M:%SZ', t.next_attempt_at / 1000, 'unixepoch') AS next_attempt_at,
-       strftime('%Y-%m-%dT%H:%M:%SZ', t.sent_at / 1000, 'unixepoch') AS sent_at, t.last_error
+       strftime('%Y-%m-%dT%H:%M:%SZ', t.sent_at / 1000, 'unixepoch') AS sent_at, t.last_error, t.held, t.told_in
 FROM letter_recipient t JOIN letter l ON l.id = t.letter;
