@@ -198,6 +198,8 @@ const ended = (child: ChildProcess): Promise<Ended> =>
 
 export const exited = (child: ChildProcess): Promise<number | null> =>
   new Promise((resolve) => {
+    // it may be over already
+    if (child.exitCode !== null || child.signalCode !== null) resolve(child.exitCode)
     child.on('exit', (code) => resolve(code))
   })
 
