@@ -1,4 +1,4 @@
-import { chooseRecipe, fitBands } from '../bands/index.ts'
+import { chooseRecipe, componentsOf, fitBands } from '../bands/index.ts'
 import type { BandFit, FittedComponent, RecipeChoice } from '../bands/types.ts'
 import type { Fault } from '../fault.ts'
 import { assignBands, solveParameters } from '../ligandField/index.ts'
@@ -63,9 +63,9 @@ export const lockRecipe = (
   if (choice.kind === 'none') return choice
   const { recipe, admissible } = choice
   const newest = spectra.at(-1)!
-  const fit = fitBands(newest, recipe, [recipe])
+  const components = componentsOf(newest, recipe)
   const assigned =
-    fit.kind === 'fitted' ? assign(fit.components, context) : { roles: recipe.components.map(() => NO_ROLE), flags: [] }
+    components === null ? { roles: recipe.components.map(() => NO_ROLE), flags: [] } : assign(components, context)
   return { recipe, admissible, ...assigned }
 }
 

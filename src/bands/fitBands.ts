@@ -40,6 +40,13 @@ export const fitBands: FitBands = (spectrum, recipe, admissible) => {
 /** Whether the recipe shows any band in the spectrum, without what takes longer to say of it. */
 export const showsBand = (spectrum: Spectrum, recipe: Recipe): boolean => lookAt(spectrum, recipe).kind === 'solved'
 
+/** The recipe's components alone, in its order: all that an assignment asks for; null where the recipe shows no band. */
+export const componentsOf = (spectrum: Spectrum, recipe: Recipe): readonly FittedComponent[] | null => {
+  const look = lookAt(spectrum, recipe)
+  if (look.kind === 'unfitted') return null
+  return recipe.components.map((_, k) => componentOf(recipe, look.solution, look.uncertainty, k))
+}
+
 interface Solved {
   readonly kind: 'solved'
   readonly points: Selection

@@ -2,5 +2,5 @@
 export { chooseRecipe } from './chooseRecipe.ts'
 export { crossingPlaces } from './crossings.ts'
 export { type CurveParts, evaluateFit } from './evaluateFit.ts'
-export { fitBands } from './fitBands.ts'
+export { componentsOf, fitBands } from './fitBands.ts'
 export { fitTogether } from './fitTogether.ts'

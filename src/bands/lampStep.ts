@@ -11,7 +11,7 @@ import { solveRecipe } from './solveRecipe.ts'
 import { cholesky, forward } from './symmetric.ts'
 import type { Recipe } from './types.ts'
 
-const JOINED = 240
+const JOINED = 100
 /** χ² that a step must gain in all spectra together: it may stand at hundreds of places. */
 const LEAST_GAIN = 30
 /** Share of the spread of the absorbance. */
