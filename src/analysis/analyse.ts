@@ -1,5 +1,5 @@
 import { chooseRecipe, componentsOf, fitBands } from '../bands/index.ts'
-import type { BandFit, FittedComponent, RecipeChoice } from '../bands/types.ts'
+import type { BandFit, FittedComponent, Recipe, RecipeChoice } from '../bands/types.ts'
 import type { Fault } from '../fault.ts'
 import { assignBands, solveParameters } from '../ligandField/index.ts'
 import type { AssignedBand, ObservedBand, ParameterFit } from '../ligandField/types.ts'
@@ -20,11 +20,20 @@ export const analyse = (raw: RawSpectrum, context: AnalysisContext, locked: Lock
   const prepared = prepareSpectrum(raw, context.prepare)
   if (prepared.kind === 'refused') return prepared
   const { spectrum } = prepared
-  const choice = locked ?? lockRecipe([spectrum], context)
-  return {
-    kind: 'analysed',
-    analysis: 'why' in choice ? unfitted(spectrum, choice) : fitted(spectrum, context, choice),
-  }
+  return { kind: 'analysed', analysis: locked ? byRecipe(spectrum, context, locked) : byItself(spectrum, context) }
+}
+
+const byRecipe = (spectrum: Spectrum, context: AnalysisContext, locked: LockedRecipe): Analysis =>
+  fitted(spectrum, context, locked, fitBands(spectrum, locked.recipe, locked.admissible))
+
+/** With a recipe chosen on this very spectrum. */
+const byItself = (spectrum: Spectrum, context: AnalysisContext): Analysis => {
+  const choice = chosen([spectrum], context)
+  if (choice.kind === 'none') return unfitted(spectrum, choice)
+  const { recipe, admissible } = choice
+  const fit = fitBands(spectrum, recipe, admissible)
+  const assigned = assignedTo(recipe, fit.kind === 'fitted' ? fit.components : null, context)
+  return fitted(spectrum, context, { recipe, admissible, ...assigned }, fit)
 }
 
 /** A spectrum that could not even be prepared, as the record keeps it: nothing but the reason. */
@@ -50,8 +59,15 @@ export const lockRecipe = (
   spectra: readonly Spectrum[],
   context: AnalysisContext,
 ): LockedRecipe | Extract<RecipeChoice, { kind: 'none' }> => {
+  const choice = chosen(spectra, context)
+  if (choice.kind === 'none') return choice
+  const { recipe, admissible } = choice
+  return { recipe, admissible, ...assignedTo(recipe, componentsOf(spectra.at(-1)!, recipe), context) }
+}
+
+const chosen = (spectra: readonly Spectrum[], context: AnalysisContext): RecipeChoice => {
   const bands = context.bands ?? expectedInside(spectra, context)
-  const choice = chooseRecipe(spectra, {
+  return chooseRecipe(spectra, {
     ...(bands === null ? {} : { bands }),
     hints: context.expected.map(({ nearPerCm, withinPerCm, shape, narrow }) => ({
       positionPerCm: nearPerCm,
@@ -60,14 +76,10 @@ export const lockRecipe = (
       narrow,
     })),
   })
-  if (choice.kind === 'none') return choice
-  const { recipe, admissible } = choice
-  const newest = spectra.at(-1)!
-  const components = componentsOf(newest, recipe)
-  const assigned =
-    components === null ? { roles: recipe.components.map(() => NO_ROLE), flags: [] } : assign(components, context)
-  return { recipe, admissible, ...assigned }
 }
+
+const assignedTo = (recipe: Recipe, components: readonly FittedComponent[] | null, context: AnalysisContext) =>
+  components === null ? { roles: recipe.components.map(() => NO_ROLE), flags: [] } : assign(components, context)
 
 /** How many of the species' broad bands the spectra can show; null where nothing is expected. */
 const expectedInside = (spectra: readonly Spectrum[], { expected }: AnalysisContext): number | null => {
@@ -122,8 +134,7 @@ const unfitted = (spectrum: Spectrum, none: Extract<RecipeChoice, { kind: 'none'
   }
 }
 
-const fitted = (spectrum: Spectrum, context: AnalysisContext, locked: LockedRecipe): Analysis => {
-  const fit = fitBands(spectrum, locked.recipe, locked.admissible)
+const fitted = (spectrum: Spectrum, context: AnalysisContext, locked: LockedRecipe, fit: BandFit): Analysis => {
   if (fit.kind === 'unfitted')
     return {
       engine: ENGINE,

@@ -195,9 +195,9 @@ const choose = (
     settled.set(trial, recipe)
     return recipe
   }
-  // two bands in place of one may each be undetermined on all the points
+  // where structure is missed two bands in place of one may each be undetermined on all the points
   const isFitted = (trial: Scored) =>
-    bandCount(trial.recipe) === 0 || spectra.some((spectrum) => showsBand(spectrum, recipeOf(trial)))
+    misfit === 0 || bandCount(trial.recipe) === 0 || spectra.some((spectrum) => showsBand(spectrum, recipeOf(trial)))
   const mayBeChosen = (trial: Scored) =>
     bands === undefined
       ? trial.stands &&

@@ -75,7 +75,7 @@ interface Weighed {
 }
 
 /** What is less likely than the best by this much in log odds tells nothing. */
-const NEGLIGIBLE = 12
+const NEGLIGIBLE = 7
 
 /** The assignments that can be, likeliest first. What the parameters say only lowers odds: one that is far behind before they are solved stays so. */
 const weighAll = (
