@@ -30,6 +30,7 @@ interface Desk {
 export const animl: Reader = {
   format: FORMAT,
   confidence: (bytes) => {
+    if (!bytes.includes(0x3c)) return 0 // no `<` in any encoding
     const decoded = decodeText(bytes)
     const head = decoded.kind === 'text' ? decoded.text.slice(0, 65_536) : ''
     const root = /^\s*</.test(head) ? ROOT.exec(head) : null

@@ -83,11 +83,19 @@ const loneEnd = (x: Float64Array, placeOf: (i: number) => Place): Fault | null =
   return null
 }
 
+/** No step differs from the first by more than half of what would count as uneven. */
+const isEven = (x: Float64Array): boolean => {
+  const step = x[1]! - x[0]!
+  for (let i = 2; i < x.length; i++) if (!(Math.abs(x[i]! - x[i - 1]! - step) <= 0.0025 * Math.abs(step))) return false
+  return true
+}
+
 /**
  * Places where an axis jumps by nearly two of its usual steps, or where one that is otherwise even is not: points are missing or
  * misprinted there. One warning for all.
  */
 export const gapWarnings = (x: Float64Array, unit: AxisUnit, placeOf: (i: number) => Place): readonly Fault[] => {
+  if (isEven(x)) return []
   const steps = Float64Array.from({ length: Math.max(0, x.length - 1) }, (_, i) => Math.abs(x[i + 1]! - x[i]!))
   const usual = Float64Array.from(steps).sort()[steps.length >> 1] ?? 0
   const isUneven = (step: number) => Math.abs(step - usual) > 0.005 * usual

@@ -2,16 +2,17 @@
  * Delimited text. Every dialect that could be meant is tried; a file is read when exactly one reading makes sense as a spectrum, or
  * when all that do give the same numbers. Otherwise it is refused, with the readings named and the YAML that settles it.
  */
-import type { Fault } from '../fault.ts'
+import type { Fault, Place } from '../fault.ts'
 import { axisFault, gapWarnings } from './axis.ts'
+import { cellsOf, columnAt, type Delimiter } from './cells.ts'
 import { axisUnitOf, type Complaint, type Group, groupColumns, ordinatesOf } from './columns.ts'
 import { dialectsFor, readable, withoutDeclaration } from './dialects.ts'
 import { factsOf } from './facts.ts'
 import { type Surroundings, surroundingsOf } from './headings.ts'
-import { ordinateOfText } from './numbers.ts'
+import { EMPTY } from './rows.ts'
 import { sampleOfLabel } from './sample.ts'
 import { settleYaml } from './settle.ts'
-import type { Delimiter, Table } from './table.ts'
+import { contentOf, type Table } from './table.ts'
 import { decodeText, linesOf } from './text.ts'
 import type { RawSpectrum, Reader, Reading, ReadingHints } from './types.ts'
 
@@ -55,7 +56,9 @@ export const delimitedText: Reader = {
         remedy: 'export the spectrum as text',
       })
     const { lines, declared } = withoutDeclaration(linesOf(decoded.text))
-    const attempts = readable(lines, dialectsFor(hints, declared)).map((table) => attemptOn(table, file, hints))
+    const attempts = readable(contentOf(decoded.text, lines), dialectsFor(hints, declared)).map((table) =>
+      attemptOn(table, file, hints),
+    )
     const good = distinct(attempts.filter((attempt) => attempt.kind === 'spectra'))
     const [only, second] = good
     if (only && !second) {
@@ -96,7 +99,7 @@ const ambiguous = (attempts: readonly Extract<Attempt, { kind: 'spectra' }>[], f
   const what = `two readings are possible: ${attempts.slice(0, 2).map(say).join(', or ')}`
   const fault = {
     code: 'ambiguous-dialect',
-    place: { at: file, line: attempts[0]!.table.rows[0]!.line },
+    place: { at: file, line: attempts[0]!.table.rows[0]!.number },
     what,
     remedy: 'say which with `reading: { delimiter: …, decimal: … }`',
   }
@@ -109,18 +112,23 @@ const ambiguous = (attempts: readonly Extract<Attempt, { kind: 'spectra' }>[], f
   }
 }
 
-const distinct = (attempts: readonly Extract<Attempt, { kind: 'spectra' }>[]): typeof attempts => {
-  const seen = new Map<string, (typeof attempts)[number]>()
-  for (const attempt of attempts) {
-    const key = attempt.spectra.map((s) => `${s.xUnit} ${s.yKind} ${s.x.join()} ${s.y.join()}`).join('|')
-    if (!seen.has(key)) seen.set(key, attempt)
-  }
-  return [...seen.values()]
-}
+/** One attempt of each set that gives the same numbers. */
+const distinct = (attempts: readonly Extract<Attempt, { kind: 'spectra' }>[]): typeof attempts =>
+  attempts.filter((attempt, i) => !attempts.slice(0, i).some((earlier) => isSame(earlier.spectra, attempt.spectra)))
+
+const isSame = (a: readonly RawSpectrum[], b: readonly RawSpectrum[]): boolean =>
+  a.length === b.length &&
+  a.every((one, k) => {
+    const other = b[k]!
+    return one.xUnit === other.xUnit && one.yKind === other.yKind && equal(one.x, other.x) && equal(one.y, other.y)
+  })
+
+const equal = (a: Float64Array, b: Float64Array): boolean =>
+  a.length === b.length && a.every((v, i) => Object.is(v, b[i]))
 
 const attemptOn = (table: Table, file: string, hints: ReadingHints): Attempt => {
   const faulty = (complaint: Complaint, line: number): Attempt => {
-    const column = complaint.column === undefined ? undefined : table.rows[0]!.cells[complaint.column]?.column
+    const column = complaint.column === undefined ? undefined : placeIn(table, 0, complaint.column, file).column
     const fault: Fault = {
       code: complaint.code,
       place: { at: file, line, ...(column === undefined ? {} : { column }) },
@@ -129,7 +137,7 @@ const attemptOn = (table: Table, file: string, hints: ReadingHints): Attempt => 
     }
     return { kind: 'faulty', table, faults: [fault], settle: complaint.settle ?? [] }
   }
-  const top = table.rows[0]!.line
+  const top = table.rows[0]!.number
   if (table.broken) {
     const { line, column, code, what } = table.broken
     const fault: Fault = {
@@ -155,23 +163,18 @@ const attemptOn = (table: Table, file: string, hints: ReadingHints): Attempt => 
     if (hole) return { kind: 'faulty', table, faults: [hole], settle: [] }
     const unit = axisUnitOf(around.labels[group.x]!, around, x, hints)
     if (unit.kind === 'open') return faulty(unit.complaint, top)
-    const finite = (c: number) => columns[c]!.filter((v) => Number.isFinite(v))
     const ordinates = ordinatesOf(
       group.ys,
       around.labels,
       around,
-      (c) => extreme(finite(c), 1),
-      (c) => extreme(finite(c), -1),
+      (c) => extreme(columns[c]!, 1),
+      (c) => extreme(columns[c]!, -1),
       hints,
     )
     if (ordinates.kind === 'open') return faulty(ordinates.complaint, top)
     for (const { code, what, remedy } of [...unit.warnings, ...ordinates.warnings])
       warnings.push({ code, place: { at: file, line: top }, what, remedy })
-    const placeOf = (i: number) => ({
-      at: file,
-      line: table.rows[i]?.line ?? top,
-      column: table.rows[i]?.cells[group.x]?.column ?? 1,
-    })
+    const placeOf = (i: number) => placeIn(table, i, group.x, file)
     for (const { column, kind } of ordinates.value) {
       const y = padded(columns[column]!, x.length)
       const fault = axisFault(x, y, unit.value, placeOf) ?? cutShort(table, group.x, column, file)
@@ -198,18 +201,26 @@ const attemptOn = (table: Table, file: string, hints: ReadingHints): Attempt => 
   return { kind: 'spectra', table, spectra, warnings }
 }
 
-const extreme = (values: Float64Array, sign: 1 | -1): number =>
-  values.reduce((most, v) => (v * sign > most * sign ? v : most), values[0] ?? 0)
+/** The largest (sign 1) or smallest (sign −1) finite value, 0 where there is none. */
+const extreme = (values: Float64Array, sign: 1 | -1): number => {
+  let most = -Infinity
+  for (const v of values) if (Number.isFinite(v) && v * sign > most) most = v * sign
+  return most === -Infinity ? 0 : most * sign
+}
+
+const placeIn = (table: Table, row: number, column: number, file: string): Place => {
+  const { number, text } = table.rows[row] ?? table.rows[0]!
+  return { at: file, line: number, column: columnAt(text, table.dialect.delimiter, column) }
+}
 
 /** The numbers of a column down to its last filled cell; NaN where missing, Infinity for an overflow word. */
-const columnOf = (table: Table, column: number): Float64Array => {
-  let length = table.rows.length
-  while (length > 0 && (table.rows[length - 1]!.cells[column]?.text ?? '') === '') length--
-  const { decimal } = table.dialect
-  return Float64Array.from(
-    { length },
-    (_, i) => ordinateOfText(table.rows[i]!.cells[column]!.text, decimal) ?? Number.NaN,
-  )
+const columnOf = ({ rows }: Table, column: number): Float64Array => {
+  const out = new Float64Array(rows.findLastIndex(({ values }) => values[column] !== EMPTY) + 1)
+  for (let i = 0; i < out.length; i++) {
+    const value = rows[i]!.values[column]!
+    out[i] = value === EMPTY ? Number.NaN : value
+  }
+  return out
 }
 
 const padded = (y: Float64Array, length: number): Float64Array => {
@@ -221,27 +232,26 @@ const padded = (y: Float64Array, length: number): Float64Array => {
 
 /** An ordinate without its abscissa, or an abscissa that is no number. */
 const holeIn = (table: Table, group: Group, x: Float64Array, file: string): Fault | null => {
-  const i = x.findIndex((v) => !Number.isFinite(v))
-  const beyond = table.rows.findIndex(
-    (row, r) => r >= x.length && group.ys.some((c) => (row.cells[c]?.text ?? '') !== ''),
-  )
-  const at = i >= 0 ? i : beyond
+  const hole = x.findIndex((v) => !Number.isFinite(v))
+  const beyond = table.rows.findIndex((row, r) => r >= x.length && group.ys.some((c) => row.values[c] !== EMPTY))
+  const at = hole >= 0 ? hole : beyond
   if (at < 0) return null
-  const row = table.rows[at]!
-  const place = { at: file, line: row.line, column: row.cells[group.x]?.column ?? 1 }
+  const text = textIn(table, at, group.x)
   return {
     code: 'axis-hole',
-    place,
-    what: `the axis has no number here ("${row.cells[group.x]?.text ?? ''}")`,
+    place: placeIn(table, at, group.x, file),
+    what: `the axis has no number here ("${text}")`,
     remedy: 'every ordinate needs its abscissa',
   }
 }
 
+const textIn = ({ rows, dialect }: Table, row: number, column: number): string =>
+  cellsOf(rows.at(row)!.text, dialect.delimiter)?.[column] ?? ''
+
 /** A comma that may be both: whole numbers between commas, with nothing to say how many columns there are. */
 const commaTwice = (table: Table, around: Surroundings): Complaint | null => {
-  if (table.dialect.delimiter !== ',') return null
-  const whole = table.rows.every((row) => row.cells.every((cell) => !cell.quoted && /^[+-]?\d*$/.test(cell.text)))
-  if (!whole || around.headed) return null
+  if (table.dialect.delimiter !== ',' || around.headed) return null
+  if (!table.rows.every(({ text }) => /^[\s\d,+-]*$/.test(text))) return null
   const what =
     'the comma may be delimiter or decimal mark: all cells are whole numbers, and no headings count the columns'
   return { code: 'ambiguous-comma', what, remedy: 'export with another delimiter, or with a heading for each column' }
@@ -263,24 +273,18 @@ const damagedHeading = (around: Surroundings): Complaint | null => {
 
 /** A last line without its line end and with fewer digits than all others was cut off while it was written. */
 const cutShort = (table: Table, xColumn: number, column: number, file: string): Fault | null => {
-  const digits = (row: Table['rows'][number]) => /[.,](\d*)$/.exec(row.cells[column]?.text ?? '')?.[1]?.length ?? 0
-  const last = table.rows.at(-1)!
-  if (!table.unended || table.rows.length < 5 || column !== table.columns - 1 || column === xColumn) return null
-  const usual = digits(table.rows[0]!)
-  if (last.cells[column]!.text === '' && table.rows.at(-2)!.cells[column]!.text !== '') {
-    return {
-      code: 'cut-short',
-      place: { at: file, line: last.line, column: last.cells[column]!.column },
-      what: 'the last line has no ordinate and no line end: the file was cut short',
-      remedy: 'copy the file again when it is complete',
-    }
-  }
-  if (digits(last) >= usual || !table.rows.slice(0, -1).every((row) => digits(row) === usual)) return null
-  const what = `the last number "${last.cells[column]!.text}" has fewer digits than all others and no line end: the file was cut short`
-  return {
+  const { rows } = table
+  if (!table.unended || rows.length < 5 || column !== table.columns - 1 || column === xColumn) return null
+  const cut = (what: string): Fault => ({
     code: 'cut-short',
-    place: { at: file, line: last.line, column: last.cells[column]!.column },
-    what,
+    place: placeIn(table, rows.length - 1, column, file),
+    what: `${what} and no line end: the file was cut short`,
     remedy: 'copy the file again when it is complete',
-  }
+  })
+  const decimals = (row: number) => /[.,](\d*)$/.exec(textIn(table, row, column))?.[1]?.length ?? 0
+  if (rows.at(-1)!.values[column] === EMPTY && rows.at(-2)!.values[column] !== EMPTY)
+    return cut('the last line has no ordinate')
+  const usual = decimals(0)
+  if (decimals(-1) >= usual || !rows.slice(0, -1).every((_, i) => decimals(i) === usual)) return null
+  return cut(`the last number "${textIn(table, -1, column)}" has fewer digits than all others`)
 }

@@ -1,6 +1,7 @@
 /** What stands around a table: headings of its columns, and `key: value` notes. */
+import { cellsOf, type Delimiter } from './cells.ts'
 import type { Pair } from './facts.ts'
-import { type Cell, cellsOf, type Delimiter, type Table } from './table.ts'
+import type { Table } from './table.ts'
 import type { Line } from './text.ts'
 import { axisWords, factOf, ordinateWords } from './words.ts'
 
@@ -20,8 +21,8 @@ const namesSomething = (cells: readonly string[]): boolean =>
     return axis.units.length > 0 || axis.quantity !== null || ordinateWords(cell).kind === 'known'
   })
 
-const trimmed = (cells: readonly Cell[]): readonly string[] =>
-  cells.slice(0, cells.findLastIndex((c) => c.text !== '') + 1).map((c) => c.text)
+const trimmed = (cells: readonly string[]): readonly string[] =>
+  cells.slice(0, cells.findLastIndex((cell) => cell !== '') + 1)
 
 /** Ways in which a heading may be cut up: as the data, by runs of blanks, by another delimiter, or between two names. */
 const splits = (line: string, delimiter: Delimiter, columns: number): readonly string[] | null => {
@@ -29,7 +30,7 @@ const splits = (line: string, delimiter: Delimiter, columns: number): readonly s
   const own = as(delimiter)
   if (own.length === columns) return own
   const raw = cellsOf(line, delimiter) ?? []
-  if (raw.length === columns) return raw.map((c) => c.text)
+  if (raw.length === columns) return raw
   const wide = line.trim().split(/\s{2,}|\t/)
   if (wide.length === columns && namesSomething(wide)) return wide
   for (const other of ['\t', ';', ',', '|'] as const) {
@@ -71,7 +72,7 @@ export const surroundingsOf = (table: Table): Surroundings => {
     taken--
   }
   const comments = [...table.comments]
-  const last = comments.filter(({ number }) => number < table.rows[0]!.line).at(-1)
+  const last = comments.filter(({ number }) => number < table.rows[0]!.number).at(-1)
   if (headings.length === 0 && last) {
     const cells = splits(last.text, delimiter, table.columns)
     if (cells !== null && namesSomething(cells) && !isFact(cells)) {

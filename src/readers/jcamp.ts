@@ -17,6 +17,7 @@ type BlockReading =
 export const jcampDx: Reader = {
   format: 'JCAMP-DX',
   confidence: (bytes) => {
+    if (!bytes.includes(0x23)) return 0 // no `#` in any encoding
     const decoded = decodeText(bytes)
     if (decoded.kind === 'binary') return 0
     if (/^\s*(?:\$\$[^\n\r]*\s*)*##\s*TITLE\s*=/i.test(decoded.text)) return 1

@@ -1,25 +1,13 @@
 /** Finds the table of numbers in a text under one dialect: which lines are data, what stands above, below and between. */
 
-import { type DecimalMark, numberOf, ordinateOfText } from './numbers.ts'
+import { cellsOf, columnAt, type Delimiter, quotedCells } from './cells.ts'
+import { numberOf, ordinateOfText } from './numbers.ts'
+import { type Dialect, EMPTY, rowOf, rowOfCells, rowOfLine } from './rows.ts'
 import type { Line } from './text.ts'
 
-export type Delimiter = ',' | ';' | '\t' | '|' | ' '
-
-export interface Dialect {
-  readonly delimiter: Delimiter
-  readonly decimal: DecimalMark
-}
-
-export interface Cell {
-  readonly text: string
-  readonly quoted: boolean
-  /** From 1. */
-  readonly column: number
-}
-
-export interface Row {
-  readonly line: number
-  readonly cells: readonly Cell[]
+export interface Row extends Line {
+  /** NaN where missing, +Infinity for an overflow word, `EMPTY` where nothing stands. */
+  readonly values: readonly number[]
 }
 
 export interface Table {
@@ -33,85 +21,62 @@ export interface Table {
   /** Whether the last row is the last line and has no line end. */
   readonly unended: boolean
   /** The first thing that breaks the table. */
-  readonly broken: {
-    readonly line: number
-    readonly column: number
-    readonly code: string
-    readonly what: string
-  } | null
+  readonly broken: Break | null
+}
+
+export interface Break {
+  readonly line: number
+  readonly column: number
+  readonly code: string
+  readonly what: string
+}
+
+/** Lines that say something, comments apart. */
+export interface Content {
+  /** The whole text. */
+  readonly text: string
+  readonly lines: readonly Line[]
+  readonly comments: readonly Line[]
+  /** Number of the last line of the file. */
+  readonly end: number
 }
 
 const COMMENT = /^\s*(?:#|!|%|\/\/|'|\*(?!\*))/
-/** Whether a line is a comment, and what it says. */
-export const commentText = (line: string): string | null => {
-  const m = COMMENT.exec(line)
-  return m
-    ? line
-        .slice(m[0].length)
-        .replace(/^[#!%/'*]+/, '')
-        .trim()
-    : null
+
+/** What a comment line says. */
+const commentOf = (line: string): string =>
+  line
+    .replace(COMMENT, '')
+    .replace(/^[#!%/'*]+/, '')
+    .trim()
+
+/** Sorts lines into content and comments; blank ones are left out. */
+export const contentOf = (text: string, all: readonly Line[]): Content => {
+  const lines: Line[] = []
+  const comments: Line[] = []
+  for (const line of all) {
+    const first = line.text.charCodeAt(0)
+    // a digit, a letter or a quote begins neither a comment nor a blank line
+    if ((first >= 48 && first < 127) || first === 34) lines.push(line)
+    else if (COMMENT.test(line.text)) comments.push({ number: line.number, text: commentOf(line.text) })
+    else if (/\S/.test(line.text)) lines.push(line)
+  }
+  return { text, lines, comments, end: all.at(-1)?.number ?? 0 }
 }
 
-/** Cells of a line; quotes keep a delimiter and are doubled to stand for themselves. Null where a quote is left open. */
-export const cellsOf = (line: string, delimiter: Delimiter): readonly Cell[] | null => {
-  const cells: Cell[] = []
-  const blank = delimiter === ' '
-  let i = 0
-  const skip = () => {
-    while (i < line.length && (line[i] === ' ' || line[i] === '\u00a0' || (line[i] === '\t' && delimiter !== '\t'))) i++
-  }
-  for (;;) {
-    skip()
-    if (blank && i >= line.length) return cells
-    const start = i
-    if (line[i] === '"') {
-      let text = ''
-      i++
-      for (;;) {
-        const close = line.indexOf('"', i)
-        if (close < 0) return null
-        text += line.slice(i, close)
-        i = close + 1
-        if (line[i] !== '"') break
-        text += '"'
-        i++
-      }
-      skip()
-      if (i < line.length && !blank && line[i] !== delimiter) return null
-      cells.push({ text: text.trim(), quoted: true, column: start + 1 })
-    } else {
-      let end = i
-      while (end < line.length && (blank ? line[end] !== ' ' && line[end] !== '\t' : line[end] !== delimiter)) end++
-      cells.push({ text: line.slice(i, end).trim(), quoted: false, column: start + 1 })
-      i = end
-    }
-    if (!blank) {
-      if (i >= line.length) return cells
-      i++
-    }
-  }
-}
+/** For each line that holds quotes its cells, null where a quote is left open. */
+export type QuotedCells = readonly (readonly string[] | null | undefined)[]
 
-const isNumberCell = (cell: Cell, { delimiter, decimal }: Dialect): boolean =>
-  // thousands marks made of blanks need another delimiter; a comma in a cell of a comma table needs quotes
-  !(delimiter === ' ' && cell.text.includes(' ')) && numberOf(cell.text, decimal) !== null
-
-const delimiterShows = (cells: readonly Cell[], { delimiter }: Dialect): boolean =>
-  delimiter !== ' ' && cells[0]!.text !== ''
-
-/** A row of data: its first filled cell is a number, the others numbers or words for missing or overflow, at least two filled. */
-const isData = (cells: readonly Cell[], dialect: Dialect): boolean => {
-  let filled = 0
-  let numbers = 0
-  for (const cell of cells) {
-    if (cell.text === '') continue
-    filled++
-    if (isNumberCell(cell, dialect)) numbers++
-    else if (filled === 1 || ordinateOfText(cell.text, dialect.decimal) === null) return false
-  }
-  // an ordinate left empty is missing, where a delimiter shows its place
-  return numbers >= 1 && (filled >= 2 || (cells.length >= 2 && delimiterShows(cells, dialect)))
+/** Cuts up the lines that hold quotes, once for both decimal marks. */
+export const cellsOfQuoted = (lines: readonly Line[], delimiter: Delimiter): QuotedCells => {
+  const quoted = lines.filter(({ text }) => text.includes('"'))
+  if (quoted.length === 0) return []
+  const cells = quotedCells(
+    quoted.map(({ text }) => text),
+    delimiter,
+  )
+  let next = 0
+  return lines.map((line) => (line === quoted[next] ? cells[next++] : undefined))
 }
 
 /** Begins as a number does, and is not `key: value`: were it read as a note, a damaged row would vanish without a word. */
@@ -120,106 +85,103 @@ const resemblesData = (text: string): boolean =>
   /^[\s",;|\t]*[-+.,?\d\s;|]+$/.test(text) ||
   /\d\s*[,;\t|]\s*[+-]?[.,]?\d+(?:[.,]\d+)?\s*$/.test(text)
 
-/** The table under this dialect, or null where no line is a row of data. */
-export const tableUnder = (lines: readonly Line[], dialect: Dialect): Table | null => {
-  const parsed: { line: Line; cells: readonly Cell[] | null; data: boolean }[] = []
-  const comments: Line[] = []
-  for (const line of lines) {
-    if (line.text.trim() === '') continue
-    const comment = commentText(line.text)
-    if (comment !== null) {
-      comments.push({ number: line.number, text: comment })
-      continue
-    }
-    const cells = cellsOf(line.text, dialect.delimiter)
-    parsed.push({ line, cells, data: cells !== null && isData(cells, dialect) })
+/** The table under this dialect, or null where fewer than `fewest` lines (or none) are rows of data. */
+export const tableUnder = (content: Content, dialect: Dialect, quoted: QuotedCells, fewest: number): Table | null => {
+  const { lines } = content
+  const rows: (readonly number[] | null)[] = []
+  let spare = lines.length - fewest
+  for (let i = 0; i < lines.length; i++) {
+    const cells = quoted[i]
+    const values = cells === undefined ? rowOf(lines[i]!.text, dialect) : rowOfCells(cells ?? [], dialect)
+    rows.push(values)
+    if (values === null && --spare < 0) return null
   }
-  // the table is the longest run of rows; a header may hold a line of numbers, rows never stand alone
-  let first = -1
-  let last = -1
-  for (let i = 0; i < parsed.length; i++) {
-    if (!parsed[i]!.data) continue
-    let end = i
-    while (end + 1 < parsed.length && parsed[end + 1]!.data) end++
-    if (end - i > last - first || first < 0) [first, last] = [i, end]
-    i = end
-  }
-  if (first < 0) return null
-  const run = parsed.slice(first, last + 1)
-  const columns = widthOf(run.map(({ cells }) => cells!))
-  const outside = [...parsed.slice(0, first), ...parsed.slice(last + 1)]
-  const broken = firstBreak(run, columns, dialect, parsed.slice(last + 1), parsed.slice(0, first))
+  const [first, end] = longestRun(rows)
+  if (end === first) return null
+  const run = lines.slice(first, end).map(({ number, text }, i) => ({ number, text, values: rows[first + i]! }))
+  const columns = widthOf(run)
+  const [above, below] = [lines.slice(0, first), lines.slice(end)]
   return {
     dialect,
     columns,
-    rows: run.map(({ line, cells }) => ({ line: line.number, cells: cells! })),
-    above: outside.filter(({ line }) => line.number < run[0]!.line.number).map(({ line }) => line),
-    below: outside.filter(({ line }) => line.number > run[0]!.line.number).map(({ line }) => line),
-    comments,
-    unended: run.at(-1)!.line.number === lines.at(-1)?.number,
-    broken,
+    rows: run,
+    above,
+    below,
+    comments: content.comments,
+    unended: run.at(-1)!.number === content.end,
+    broken: firstBreak(run, columns, dialect, above, below),
   }
 }
 
+/** The table is the longest run of rows; a header may hold a line of numbers, rows never stand alone. */
+const longestRun = (rows: readonly (readonly number[] | null)[]): readonly [first: number, end: number] => {
+  let best: readonly [number, number] = [0, 0]
+  for (let i = 0; i < rows.length; i++) {
+    let end = i
+    while (end < rows.length && rows[end] !== null) end++
+    if (end - i > best[1] - best[0]) best = [i, end]
+    i = end
+  }
+  return best
+}
+
+const filledOf = (values: readonly number[]): number => values.findLastIndex((v) => v !== EMPTY) + 1
+
 /** What most rows have of cells, empty ones at the end of every row not counted. */
-const widthOf = (rows: readonly (readonly Cell[])[]): number => {
+const widthOf = (rows: readonly Row[]): number => {
   const counts = new Map<number, number>()
-  for (const cells of rows) counts.set(cells.length, (counts.get(cells.length) ?? 0) + 1)
+  for (const { values } of rows) counts.set(values.length, (counts.get(values.length) ?? 0) + 1)
   const [usual] = [...counts].reduce((a, b) => (b[1] > a[1] ? b : a))
-  const filled = Math.max(
-    ...rows
-      .filter((cells) => cells.length === usual)
-      .map((cells) => cells.findLastIndex(({ text }) => text !== '') + 1),
-  )
+  let filled = 0
+  for (const { values } of rows) {
+    if (filled === usual) break
+    if (values.length === usual) filled = Math.max(filled, filledOf(values))
+  }
   return Math.min(usual, Math.max(filled, 2))
 }
 
-type Parsed = { readonly line: Line; readonly cells: readonly Cell[] | null; readonly data: boolean }
-
 const firstBreak = (
-  run: readonly Parsed[],
+  run: readonly Row[],
   columns: number,
   dialect: Dialect,
-  after: readonly Parsed[],
-  before: readonly Parsed[],
-): Table['broken'] => {
-  for (const { line, cells } of run) {
+  above: readonly Line[],
+  below: readonly Line[],
+): Break | null => {
+  for (const { number: line, text, values } of run) {
     // a row may only be shorter where it would have been empty: paired columns of unequal length write their delimiters
-    if (cells!.length < columns || cells!.findLastIndex((cell) => cell.text !== '') >= columns) {
-      const what = `${cells!.length} cells where the table has ${columns}`
-      return { line: line.number, column: line.text.length + 1, code: 'row-length', what }
+    if (values.length < columns || (values.length > columns && filledOf(values) > columns)) {
+      const what = `${values.length} cells where the table has ${columns}`
+      return { line, column: text.length + 1, code: 'row-length', what }
     }
   }
-  const suspects: readonly Parsed[] = [
-    ...after,
-    ...before.filter(({ cells, line }) => isLikeRow(cells, line, dialect, columns)),
-  ]
-  for (const { line, cells, data } of suspects) {
-    if (data)
-      return { line: line.number, column: 1, code: 'second-table', what: 'a row of numbers apart from the table' }
-    if (!resemblesData(line.text)) continue
-    if (cells === null)
-      return {
-        line: line.number,
-        column: line.text.indexOf('"') + 1,
-        code: 'open-quote',
-        what: 'a quote is opened and not closed',
-      }
-    const bad = cells.find(
-      (cell, i) =>
-        (i === 0 ? numberOf(cell.text, dialect.decimal) : ordinateOfText(cell.text, dialect.decimal)) === null,
+  for (const line of [...below, ...above.filter(({ text }) => isLikeRow(text, dialect, columns))]) {
+    const { number, text } = line
+    if (rowOfLine(text, dialect) !== null)
+      return { line: number, column: 1, code: 'second-table', what: 'a row of numbers apart from the table' }
+    if (!resemblesData(text)) continue
+    const cells = cellsOf(text, dialect.delimiter)
+    if (cells === null) {
+      const what = 'a quote is opened and not closed'
+      return { line: number, column: text.indexOf('"') + 1, code: 'open-quote', what }
+    }
+    const bad = cells.findIndex(
+      (cell, i) => (i === 0 ? numberOf(cell, dialect.decimal) : ordinateOfText(cell, dialect.decimal)) === null,
     )
-    const [column, what] = bad
-      ? [bad.column, `"${bad.text}" is no number`]
-      : [1, `${cells.length} cells where the table has ${columns}`]
-    return { line: line.number, column, code: bad ? 'not-a-number' : 'row-length', what }
+    return bad < 0
+      ? { line: number, column: 1, code: 'row-length', what: `${cells.length} cells where the table has ${columns}` }
+      : {
+          line: number,
+          column: columnAt(text, dialect.delimiter, bad),
+          code: 'not-a-number',
+          what: `"${cells[bad]}" is no number`,
+        }
   }
   return null
 }
 
 /** Above the table stand headings and notes; what has a row's width and begins with a number is a damaged row. */
-const isLikeRow = (cells: readonly Cell[] | null, line: Line, dialect: Dialect, columns: number): boolean =>
-  cells !== null &&
-  cells.length === columns &&
-  /^\s*"?[+\-\u2212]?[.,]?\d/.test(line.text) &&
-  numberOf(cells[0]!.text, dialect.decimal) !== null
+const isLikeRow = (text: string, { delimiter, decimal }: Dialect, columns: number): boolean => {
+  if (!/^\s*"?[+\-\u2212]?[.,]?\d/.test(text)) return false
+  const cells = cellsOf(text, delimiter)
+  return cells !== null && cells.length === columns && numberOf(cells[0]!, decimal) !== null
+}

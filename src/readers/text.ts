@@ -38,7 +38,8 @@ const byteOrder = (bytes: Uint8Array): 'utf-16le' | 'utf-16be' | null => {
 
 const END_MARK = 0x1a
 /** Control characters other than tab, line ends, vertical tab and form feed. */
-const isControl = (code: number): boolean => code < 9 || (code > 13 && code < 32) || code === 127
+// biome-ignore lint/suspicious/noControlCharactersInRegex: they are what is looked for
+const CONTROL = /[\x00-\x08\x0e-\x1f\x7f]/
 
 /**
  * Text of a file in UTF-8, UTF-16 (with or without a mark) or, where it is neither, Windows-1252, of which Latin-1 is a part.
@@ -56,12 +57,14 @@ export const decodeText = (bytes: Uint8Array): Decoded => {
   // the end mark of old systems (0x1A) may close a file
   const end = text.trimEnd()
   const body = end.charCodeAt(end.length - 1) === END_MARK ? end.slice(0, -1) : text
-  for (let i = 0; i < body.length; i++) {
-    if (isControl(body.charCodeAt(i))) return { kind: 'binary', why: `a control character stands at position ${i + 1}` }
-  }
+  const control = body.search(CONTROL)
+  if (control >= 0) return { kind: 'binary', why: `a control character stands at position ${control + 1}` }
   return { kind: 'text', text: body, encoding }
 }
 
 /** Lines ended by CR, LF or CRLF, mixtures included; form feeds count as blanks. */
 export const linesOf = (text: string): readonly Line[] =>
-  text.split(/\r\n|\n|\r/).map((line, i) => ({ number: i + 1, text: line.replace(/[\f\v]/g, ' ') }))
+  text
+    .replace(/[\f\v]/g, ' ')
+    .split(text.includes('\r') ? /\r\n|\n|\r/ : '\n')
+    .map((line, i) => ({ number: i + 1, text: line }))
