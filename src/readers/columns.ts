@@ -30,7 +30,8 @@ const open = (complaint: Complaint): { readonly kind: 'open'; readonly complaint
   complaint,
 })
 
-const isMonotone = (x: Float64Array): boolean => {
+/** Whether values rise, or fall, from each to the next. */
+export const isMonotone = (x: Float64Array): boolean => {
   const sign = Math.sign((x[1] ?? 0) - (x[0] ?? 0))
   for (let i = 1; i < x.length; i++) if (!((x[i]! - x[i - 1]!) * sign > 0)) return false
   return x.length > 1

@@ -17,6 +17,8 @@ export interface ReadingHints {
   readonly y?: OrdinateKind
   readonly delimiter?: string
   readonly decimal?: '.' | ','
+  /** Whether a spectrum of delimited text runs down a column or along a row. */
+  readonly layout?: 'columns' | 'rows'
 }
 
 /** A time as the file writes it. `offset` is null where the file gives local time without a zone. */
