@@ -45,11 +45,11 @@ const solved = (recipe: Recipe, points: readonly Selection[]): Found | null => {
 /** On a baseline that is tilted, where that describes the spectra as well: Δχ² below this for χ² of one a point. */
 const AS_WELL = 10
 
-const tiltedRivals = (best: Found, points: readonly Selection[], isMissed: boolean): readonly Found[] => {
+const tiltedRivals = (best: Found, points: readonly Selection[]): readonly Found[] => {
   const count = points.reduce((sum, { x }) => sum + x.length, 0)
   const { windowPerCm, background } = best.recipe
   const steps = background.filter(({ kind }) => kind === 'step')
-  return (isMissed ? [false, flankStart(points)] : [false]).flatMap((tail) => {
+  return [false, flankStart(points)].flatMap((tail) => {
     const recipe = makeRecipe(bandPlaces(best), tail, [...TILTED, ...steps], windowPerCm, 'search')
     const found = solved(recipe, points)
     return found && found.chi2 < best.chi2 * (1 + AS_WELL / count) ? [found] : []
@@ -78,5 +78,5 @@ const richerRivals = (best: Found, points: readonly Selection[]): readonly Found
 /** On a tilted baseline, and where the chosen recipe misses the noise with skewed bands and with one more. */
 export const rivalsOf = (best: Found, points: readonly Selection[], isMissed: boolean): readonly Found[] => [
   ...(isMissed ? [...richerRivals(best, points), ...skewedRivals(best, points)] : []),
-  ...tiltedRivals(best, points, isMissed),
+  ...tiltedRivals(best, points),
 ]

@@ -155,7 +155,7 @@ const matrixBelow = (
       broken = breakIn(lines[i]!, cells, lead, columns, dialect)
   }
   if (rows.length === 0 && broken === null) return null
-  const damaged = head.x.findIndex((value) => value === null)
+  const damaged = head.x.indexOf(null)
   if (damaged >= 0 || head.headings.some((cell) => /^[+-]?[.,]?\d/.test(cell))) {
     const what = 'a cell among the wavelengths is no number'
     broken = { line: lines[at]!.number, column: 1, code: 'not-a-number', what }
