@@ -10,120 +10,171 @@ export interface LineOfTable {
   readonly xColumn: number
   /** As written; NaN for `?`. */
   readonly ordinates: readonly number[]
-  readonly columns: readonly number[]
+  /** Column of the first ordinate. */
+  readonly column: number
   /** Whether the last ordinate came of a difference: then the next line repeats it as a check. */
   readonly endsInDifference: boolean
-  readonly forms: ReadonlySet<'AFFN' | 'PAC' | 'SQZ' | 'DIF' | 'DUP'>
+  /** Sum of the bits of `FORMS`. */
+  readonly forms: number
 }
 
 export type DecodedLine =
   | { readonly kind: 'line'; readonly value: LineOfTable }
   | { readonly kind: 'wrong'; readonly column: number; readonly what: string }
 
-const SQZ = '@ABCDEFGHIabcdefghi'
-const DIF = '%JKLMNOPQRjklmnopqr'
-const DUP = 'STUVWXYZs'
+export const FORMS = { AFFN: 1, PAC: 2, SQZ: 4, DIF: 8, DUP: 16 } as const
 
-const signedDigit = (alphabet: string, letter: string): number => {
-  const at = alphabet.indexOf(letter)
-  return at <= 9 ? at : 9 - at
+const ALPHABETS = [
+  { form: FORMS.SQZ, letters: '@ABCDEFGHI', first: 0, sign: 1 },
+  { form: FORMS.SQZ, letters: 'abcdefghi', first: 1, sign: -1 },
+  { form: FORMS.DIF, letters: '%JKLMNOPQR', first: 0, sign: 1 },
+  { form: FORMS.DIF, letters: 'jklmnopqr', first: 1, sign: -1 },
+  { form: FORMS.DUP, letters: 'STUVWXYZs', first: 1, sign: 1 },
+] as const
+
+/** Of each ASCII character that leads a number: its form (0: none), its digit and its sign. */
+const FORM = new Uint8Array(128)
+const DIGIT = new Uint8Array(128)
+const SIGN = new Int8Array(128)
+for (const { form, letters, first, sign } of ALPHABETS)
+  for (let k = 0; k < letters.length; k++) {
+    const code = letters.charCodeAt(k)
+    FORM[code] = form
+    DIGIT[code] = first + k
+    SIGN[code] = sign
+  }
+
+const formAt = (text: string, i: number): number => {
+  const code = text.charCodeAt(i)
+  return code < 128 ? FORM[code]! : 0
+}
+
+const POINT = 46
+const isDigit = (code: number): boolean => code >= 48 && code <= 57
+
+/** Where the digits, at most one point among them, end. */
+const endOfDigits = (text: string, from: number): number => {
+  let i = from
+  while (isDigit(text.charCodeAt(i))) i++
+  if (text.charCodeAt(i) === POINT) {
+    i++
+    while (isDigit(text.charCodeAt(i))) i++
+  }
+  return i
+}
+
+/** Digits of which a double holds every one. */
+const SAFE_DIGITS = 15
+
+/** The number that a letter at `at` leads and that ends before `end`. */
+const ledNumber = (text: string, at: number, end: number): number => {
+  const code = text.charCodeAt(at)
+  let value = DIGIT[code]!
+  const isPlain = end - at <= SAFE_DIGITS
+  for (let i = at + 1; i < end; i++) {
+    const digit = text.charCodeAt(i)
+    if (digit === POINT || !isPlain) return SIGN[code]! * Number(`${DIGIT[code]}${text.slice(at + 1, end)}`)
+    value = 10 * value + digit - 48
+  }
+  return SIGN[code]! * value
 }
 
 // an E is an exponent only with its sign and two or three digits; else it is the SQZ digit 5
 const AFFN = /[+-]?(?:\d+(?:\.\d*)?|\.\d+)(?:[Ee][+-]\d{2,3}(?!\d))?/y
-const REST = /\d*(?:\.\d*)?/y
+
+const MOST_REPETITIONS = 100_000
 
 /** Decodes one line of an (X++(Y..Y)) table: its abscissa and its ordinates, undone down to plain numbers. */
 export const decodeLine = (text: string): DecodedLine => {
   const ordinates: number[] = []
-  const columns: number[] = []
-  const forms = new Set<'AFFN' | 'PAC' | 'SQZ' | 'DIF' | 'DUP'>()
+  let column = 0
+  let forms = 0
   const wrong = (at: number, what: string): DecodedLine => ({ kind: 'wrong', column: at + 1, what })
-  let i = text.length - text.trimStart().length
-  const xAt = i
-  AFFN.lastIndex = i
+  const xAt = text.length - text.trimStart().length
+  AFFN.lastIndex = xAt
   let m = AFFN.exec(text)
-  let x: number | null = null
+  let i = xAt
+  let x = Number.NaN
   if (m) {
     x = Number(m[0])
     i = AFFN.lastIndex
-  } else if (SQZ.includes(text[i] ?? ' ')) {
+  } else if (formAt(text, i) === FORMS.SQZ) {
     // the abscissa itself may be squeezed
-    REST.lastIndex = i + 1
-    const rest = REST.exec(text)![0]
-    const lead = signedDigit(SQZ, text[i]!)
-    x = Number(`${lead < 0 || Object.is(lead, -0) ? '-' : ''}${Math.abs(lead)}${rest}`)
-    i += 1 + rest.length
+    const end = endOfDigits(text, i + 1)
+    x = ledNumber(text, i, end)
+    i = end
   }
-  if (x === null || !Number.isFinite(x))
-    return wrong(i, `"${text.trim().slice(0, 12)}" does not begin with an abscissa`)
+  if (!Number.isFinite(x)) return wrong(i, `"${text.trim().slice(0, 12)}" does not begin with an abscissa`)
+  let last = Number.NaN
   let difference: number | null = null
   let doubled = false
   let separated = false
   while (i < text.length) {
-    const c = text[i]!
-    if (c === ' ' || c === '\t' || c === ',') {
+    const code = text.charCodeAt(i)
+    if (code === 32 || code === 9 || code === 44) {
       separated = true
       i++
       continue
     }
     const at = i
-    const push = (value: number) => {
-      ordinates.push(value)
-      columns.push(at + 1)
-    }
-    if (c === '?') {
-      push(Number.NaN)
-      difference = null
-      doubled = false
-      i++
-    } else if (DUP.includes(c)) {
-      REST.lastIndex = i + 1
-      const rest = REST.exec(text)![0]
-      const count = Number(`${DUP.indexOf(c) + 1}${rest}`)
+    const form = code < 128 ? FORM[code]! : 0
+    if (ordinates.length === 0) column = at + 1
+    if (form === FORMS.DUP) {
+      i = endOfDigits(text, at + 1)
+      const count = ledNumber(text, at, i)
       if (ordinates.length === 0) return wrong(at, 'a repetition with nothing before it')
       if (doubled) return wrong(at, 'two repetitions in a row')
-      if (rest.includes('.') || count > 100_000) return wrong(at, `"${c}${rest}" is no count of repetitions`)
-      for (let k = 1; k < count; k++) push(ordinates.at(-1)! + (difference ?? 0))
-      forms.add('DUP')
-      doubled = true
-      i += 1 + rest.length
-    } else if (SQZ.includes(c) || DIF.includes(c)) {
-      const alphabet = SQZ.includes(c) ? SQZ : DIF
-      REST.lastIndex = i + 1
-      const rest = REST.exec(text)![0]
-      const lead = signedDigit(alphabet, c)
-      const value = Number(`${lead < 0 ? '-' : ''}${Math.abs(lead)}${rest}`)
-      if (!Number.isFinite(value)) return wrong(at, `"${c}${rest}" is no number`)
-      if (alphabet === SQZ) {
-        push(value)
-        difference = null
-      } else {
-        if (ordinates.length === 0) return wrong(at, 'a difference with nothing before it')
-        if (Number.isNaN(ordinates.at(-1)!)) return wrong(at, 'a difference from a missing ordinate')
-        push(ordinates.at(-1)! + value)
-        difference = value
+      if (!Number.isInteger(count) || count > MOST_REPETITIONS || text.slice(at, i).includes('.'))
+        return wrong(at, `"${text.slice(at, i)}" is no count of repetitions`)
+      for (let k = 1; k < count; k++) {
+        last += difference ?? 0
+        ordinates.push(last)
       }
-      forms.add(alphabet === SQZ ? 'SQZ' : 'DIF')
-      doubled = false
-      i += 1 + rest.length
-    } else {
-      AFFN.lastIndex = i
-      m = AFFN.exec(text)
-      if (!m) return wrong(at, `"${c}" stands in no number form of the table`)
-      const signed = c === '+' || c === '-'
-      if (!separated && !signed && ordinates.length + 1 > 0 && /[\d.]/.test(text[at - 1] ?? ' '))
-        return wrong(at, `"${m[0]}" runs into the number before it`)
-      push(Number(m[0]))
-      forms.add(separated ? 'AFFN' : 'PAC')
+    } else if (form !== 0) {
+      i = endOfDigits(text, at + 1)
+      const value = ledNumber(text, at, i)
+      if (!Number.isFinite(value)) return wrong(at, `"${text.slice(at, i)}" is no number`)
+      if (form === FORMS.DIF) {
+        if (ordinates.length === 0) return wrong(at, 'a difference with nothing before it')
+        if (Number.isNaN(last)) return wrong(at, 'a difference from a missing ordinate')
+        last += value
+        difference = value
+      } else {
+        last = value
+        difference = null
+      }
+      ordinates.push(last)
+    } else if (code === 63) {
+      last = Number.NaN
+      ordinates.push(last)
       difference = null
-      doubled = false
+      i++
+    } else {
+      AFFN.lastIndex = at
+      m = AFFN.exec(text)
+      if (!m) return wrong(at, `"${text[at]}" stands in no number form of the table`)
+      const signed = code === 43 || code === 45
+      if (!separated && !signed && /[\d.]/.test(text[at - 1] ?? ' '))
+        return wrong(at, `"${m[0]}" runs into the number before it`)
+      last = Number(m[0])
+      ordinates.push(last)
+      forms |= separated ? FORMS.AFFN : FORMS.PAC
+      difference = null
       i = AFFN.lastIndex
     }
+    forms |= form
+    doubled = form === FORMS.DUP
     separated = false
   }
   return {
     kind: 'line',
-    value: { x, xColumn: xAt + 1, ordinates, columns, endsInDifference: difference !== null, forms },
+    value: { x, xColumn: xAt + 1, ordinates, column, endsInDifference: difference !== null, forms },
   }
 }
+
+/** The forms in words, in the order of the standard. */
+export const sayForms = (forms: number): string =>
+  Object.entries(FORMS)
+    .filter(([, bit]) => (forms & bit) !== 0)
+    .map(([name]) => name)
+    .join(' ')

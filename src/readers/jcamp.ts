@@ -2,6 +2,8 @@
 import type { Fault } from '../fault.ts'
 import { axisFault } from './axis.ts'
 import { factsOf, type Pair } from './facts.ts'
+import { type Page, pagesOf } from './jcampNtuples.ts'
+import { onPage } from './jcampPage.ts'
 import { type Block, blocksOf, textOf } from './jcampRecords.ts'
 import { pointsOf } from './jcampTable.ts'
 import { settleYaml } from './settle.ts'
@@ -13,7 +15,7 @@ type BlockReading =
   | { readonly kind: 'spectrum'; readonly spectrum: RawSpectrum; readonly forms: string }
   | { readonly kind: 'faulty'; readonly faults: readonly Fault[]; readonly settle: readonly string[] }
 
-/** Reads JCAMP-DX, XYDATA and XYPOINTS, alone or in LINK blocks. */
+/** Reads JCAMP-DX, XYDATA, XYPOINTS and NTUPLES, alone or in LINK blocks. */
 export const jcampDx: Reader = {
   format: 'JCAMP-DX',
   confidence: (bytes) => {
@@ -104,9 +106,13 @@ const gather = (block: Block, file: string, hints: ReadingHints, found: BlockRea
   }
   const tables = block.records.filter(({ label }) => ['XYDATA', 'XYPOINTS'].includes(label))
   const other = block.records.find(({ label }) =>
-    ['NTUPLES', 'DATATABLE', 'PEAKTABLE', 'PEAKASSIGNMENTS', 'RADATA'].includes(label),
+    ['DATATABLE', 'PEAKTABLE', 'PEAKASSIGNMENTS', 'RADATA'].includes(label),
   )
-  if (tables.length > 1)
+  if (block.records.some(({ label }) => label === 'NTUPLES')) {
+    const { pages, faults: wrong } = pagesOf(block, file)
+    faults.push(...wrong)
+    for (const page of pages) found.push(readPage(page, file, hints))
+  } else if (tables.length > 1)
     found.push(
       faulty(file, tables[1]!.line, 'two-tables', 'a block with two tables', 'give each spectrum a block of its own'),
     )
@@ -130,6 +136,12 @@ const faulty = (
   faults: [{ code, place: { at: file, line }, what, remedy }],
   settle,
 })
+
+const readPage = ({ block, table, page }: Page, file: string, hints: ReadingHints): BlockReading => {
+  const reading = readBlock(block, table, file, hints)
+  if (reading.kind === 'faulty') return reading
+  return { ...reading, forms: `NTUPLES ${reading.forms}`, spectrum: onPage(reading.spectrum, page, file) }
+}
 
 const readBlock = (block: Block, table: Block['records'][number], file: string, hints: ReadingHints): BlockReading => {
   const points = pointsOf(block, table, file)
@@ -216,7 +228,8 @@ type KindReading =
 const yKindOf = (block: Block, y: Float64Array, hints: ReadingHints): KindReading => {
   const text = textOf(block, 'YUNITS') ?? ''
   const words = ordinateWords(text)
-  const largest = y.reduce((most, v) => (Number.isFinite(v) ? Math.max(most, v) : most), 0)
+  let largest = 0
+  for (let i = 0; i < y.length; i++) if (y[i]! > largest && y[i]! < Infinity) largest = y[i]!
   if (hints.y !== undefined) return { kind: 'known', y: hints.y, warning: null }
   if (words.kind !== 'known')
     return {

@@ -4,7 +4,7 @@
  * that contradicts itself moves every band, so it is refused; FIRSTY and extrema move nothing and become warnings.
  */
 import type { Fault } from '../fault.ts'
-import { decodeLine } from './asdf.ts'
+import { decodeLine, sayForms } from './asdf.ts'
 import type { Block, JcampRecord } from './jcampRecords.ts'
 
 export type Points =
@@ -12,7 +12,7 @@ export type Points =
       readonly kind: 'points'
       readonly x: Float64Array
       readonly y: Float64Array
-      readonly lines: readonly number[]
+      readonly lines: ArrayLike<number>
       readonly forms: string
       readonly warnings: readonly Fault[]
     }
@@ -99,8 +99,8 @@ export const pointsOf = (block: Block, table: JcampRecord, file: string): Points
       'the file was cut short or changed: export it again',
     )
   }
-  const x = pairs ? Float64Array.from(raw.x, (v) => v * xFactor) : axisOf(first!.value, last!.value, count.value)
-  const y = Float64Array.from(raw.y, (v) => v * yFactor)
+  const x = pairs ? scaled(raw.x, xFactor) : axisOf(first!.value, last!.value, count.value)
+  const y = scaled(raw.y, yFactor)
   for (const [written, i] of [
     [first, 0],
     [last, x.length - 1],
@@ -156,19 +156,28 @@ export const pointsOf = (block: Block, table: JcampRecord, file: string): Points
   }
 }
 
+/** Evenly spaced, rounded to twelve digits: what is beyond comes of the arithmetic. */
 const axisOf = (first: number, last: number, count: number): Float64Array => {
   const step = count > 1 ? (last - first) / (count - 1) : 0
-  return Float64Array.from({ length: count }, (_, i) =>
-    i === count - 1 ? last : Number((first + i * step).toPrecision(12)),
-  )
+  const scale = 10 ** (12 - Math.ceil(Math.log10(Math.max(Math.abs(first), Math.abs(last), 1e-300))))
+  const x = new Float64Array(count)
+  for (let i = 0; i < count; i++) x[i] = Math.round((first + i * step) * scale) / scale
+  x[count - 1] = last
+  return x
+}
+
+const scaled = (values: ArrayLike<number>, by: number): Float64Array => {
+  const result = new Float64Array(values.length)
+  for (let i = 0; i < values.length; i++) result[i] = values[i]! * by
+  return result
 }
 
 type RawPoints =
   | {
       readonly kind: 'raw'
-      readonly x: readonly number[]
-      readonly y: readonly number[]
-      readonly lines: readonly number[]
+      readonly x: ArrayLike<number>
+      readonly y: ArrayLike<number>
+      readonly lines: ArrayLike<number>
       readonly forms: string
       /** How far the last abscissa could be wrong for all that the lines say: nothing after the last line's own is written. */
       readonly confirmed: number
@@ -193,20 +202,21 @@ const sequenceIn = (
     },
   })
   const step = count.value > 1 ? (last.value - first.value) / (count.value - 1) : 0
-  const y: number[] = []
-  const lines: number[] = []
-  const forms = new Set<string>()
+  const y = new Float64Array(count.value)
+  const lines = new Int32Array(count.value)
+  let have = 0
+  let forms = 0
   let check = false
   let confirmed = Number.POSITIVE_INFINITY
   for (const { number, text } of table.body) {
     const decoded = decodeLine(text)
     if (decoded.kind === 'wrong') return faulty(number, decoded.column, 'bad-ordinate', decoded.what)
-    const { x, xColumn, ordinates, columns, endsInDifference } = decoded.value
-    for (const form of decoded.value.forms) forms.add(form)
+    const { x, xColumn, ordinates, column, endsInDifference } = decoded.value
+    forms |= decoded.value.forms
     if (ordinates.length === 0)
       return faulty(number, xColumn, 'no-ordinates', 'a line with an abscissa and no ordinate')
     // the abscissa of a line with a check ordinate is that of the point it repeats
-    const at = check ? y.length - 1 : y.length
+    const at = check ? have - 1 : have
     const expected = first.value + at * step
     const written = text.trim().match(/^[+-]?\d*\.?\d*/)![0]
     // an abscissa is rounded where it ends
@@ -216,23 +226,24 @@ const sequenceIn = (
       const what = `the line begins at X = ${x * xFactor} where FIRSTX, LASTX and NPOINTS put point ${at + 1} at ${Number(expected.toPrecision(10))}`
       return faulty(number, xColumn, 'axis-contradiction', what)
     }
-    if (check && ordinates[0] !== y.at(-1)) {
+    if (check && ordinates[0] !== y[have - 1]) {
       return faulty(
         number,
-        columns[0]!,
+        column,
         'check-ordinate',
-        `the check ordinate is ${ordinates[0]}, the line before ended at ${y.at(-1)}`,
+        `the check ordinate is ${ordinates[0]}, the line before ended at ${y[have - 1]}`,
       )
     }
-    for (let k = check ? 1 : 0; k < ordinates.length; k++) {
-      y.push(ordinates[k]!)
-      lines.push(number)
-    }
-    if (y.length > count.value)
+    const repeated = check ? 1 : 0
+    if (have + ordinates.length - repeated > count.value)
       return faulty(number, 1, 'point-count', `the table holds more points than the ${count.value} of NPOINTS`)
+    for (let k = repeated; k < ordinates.length; k++) {
+      y[have] = ordinates[k]!
+      lines[have++] = number
+    }
     check = endsInDifference
   }
-  return { kind: 'raw', x: [], y, lines, forms: [...forms].join(' '), confirmed }
+  return { kind: 'raw', x: [], y: y.subarray(0, have), lines, forms: sayForms(forms), confirmed }
 }
 
 const pairsIn = (table: JcampRecord, file: string): RawPoints => {
@@ -272,7 +283,12 @@ const pairsIn = (table: JcampRecord, file: string): RawPoints => {
 
 /** FIRSTY, MINY, MAXY against the data. FIRSTY is found in published files in the table's own units too: both are accepted. */
 const ordinateWarnings = (y: Float64Array, yFactor: number, numbers: Numbers, file: string): readonly Fault[] => {
-  const seen = y.filter((v) => Number.isFinite(v))
+  let [least, most] = [Infinity, -Infinity]
+  for (let i = 0; i < y.length; i++) {
+    const v = y[i]!
+    if (v < least) least = v
+    if (v > most) most = v
+  }
   const warnings: Fault[] = []
   const compare = (label: string, actual: number, scales: readonly number[]) => {
     const said = numbers.of(label)
@@ -287,17 +303,9 @@ const ordinateWarnings = (y: Float64Array, yFactor: number, numbers: Numbers, fi
     })
   }
   if (Number.isFinite(y[0])) compare('FIRSTY', y[0]!, [1, yFactor])
-  if (seen.length > 0) {
-    compare(
-      'MAXY',
-      seen.reduce((a, b) => Math.max(a, b)),
-      [1],
-    )
-    compare(
-      'MINY',
-      seen.reduce((a, b) => Math.min(a, b)),
-      [1],
-    )
+  if (least <= most) {
+    compare('MAXY', most, [1])
+    compare('MINY', least, [1])
   }
   return warnings
 }
