@@ -102,15 +102,19 @@ const inspectFile = (path: string, hints: ReadingHints, json: boolean): ExitCode
     return EXIT.noInput
   }
   const reading = readSpectra(bytes, path, hints)
-  const sure = confidences(bytes)[0]?.confidence ?? 0
+  const claims = confidences(bytes).map(({ reader, confidence }) => ({ format: reader.format, confidence }))
+  const sure = claims[0]?.confidence ?? 0
   const refusals: Fault[] = reading.kind === 'refused' ? [...reading.faults] : []
-  if (!json) printLine(heading(path, reading, sure))
+  if (!json) {
+    printLine(heading(path, reading, sure))
+    for (const line of otherClaims(claims)) printLine(`  ${line}`)
+  }
   for (const raw of reading.spectra) {
     const prepared = prepareSpectrum(raw, { ...OPTIONS, medium: hints.medium ?? OPTIONS.medium })
     const spectrum = prepared.kind === 'prepared' ? prepared.spectrum : null
     if (prepared.kind === 'refused')
       refusals.push(...prepared.faults.map((fault) => ({ ...fault, place: { at: path } })))
-    if (json) printJson(asJson(path, reading, sure, raw, spectrum))
+    if (json) printJson({ ...asJson(path, reading, sure, raw, spectrum), readers: claims })
     else for (const line of describe(raw, spectrum)) printLine(`  ${line}`)
   }
   if (reading.kind === 'refused') {
@@ -121,6 +125,7 @@ const inspectFile = (path: string, hints: ReadingHints, json: boolean): ExitCode
         confidence: sure,
         faults: reading.faults,
         settle: reading.settle,
+        readers: claims,
       })
     if (!json && reading.settle.length > 0) {
       printLine(
@@ -132,6 +137,13 @@ const inspectFile = (path: string, hints: ReadingHints, json: boolean): ExitCode
   printFaults(refusals)
   return refusals.length > 0 ? EXIT.unreadable : EXIT.ok
 }
+
+/** Other readers that think the file may be theirs. */
+const otherClaims = (claims: readonly { readonly format: string; readonly confidence: number }[]): readonly string[] =>
+  claims
+    .slice(1)
+    .filter(({ confidence }) => confidence > 0)
+    .map(({ format, confidence }) => `might also be ${format} (sure to ${confidence})`)
 
 const heading = (path: string, reading: Reading, sure: number): string =>
   reading.kind === 'read'
