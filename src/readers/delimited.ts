@@ -7,7 +7,7 @@ import type { Delimiter } from './cells.ts'
 import type { Complaint } from './columns.ts'
 import { readColumns } from './columnTable.ts'
 import { dialectsFor, readable, withoutDeclaration } from './dialects.ts'
-import { isPlausible, matricesIn } from './matrix.ts'
+import { matricesIn } from './matrix.ts'
 import { readMatrix } from './matrixSpectra.ts'
 import { settleYaml } from './settle.ts'
 import { contentOf } from './table.ts'
@@ -47,9 +47,7 @@ export const delimitedText: Reader = {
     const rows =
       hints.layout === 'columns'
         ? []
-        : matricesIn(content, dialects)
-            .filter((matrix) => isPlausible(matrix, hints))
-            .map((matrix) => readMatrix(matrix, file, hints))
+        : matricesIn(content, dialects, hints).map((matrix) => readMatrix(matrix, file, hints))
     const good = distinct([...columns, ...rows].filter((attempt) => attempt.kind === 'spectra'))
     const [only, second] = good
     const settled = rows.find((attempt) => attempt.kind === 'faulty' && attempt.fault.code === 'ambiguous-layout')

@@ -37,28 +37,37 @@ const HEADER_LINES = 200
 const FEWEST = 3
 
 /** Every matrix that a dialect makes of the text; of dialects that explain fewer rows than another none. */
-export const matricesIn = (content: Content, dialects: readonly Dialect[]): readonly Matrix[] => {
+export const matricesIn = (content: Content, dialects: readonly Dialect[], hints: ReadingHints): readonly Matrix[] => {
   const quoted = new Map<Delimiter, QuotedCells>()
   const cells = (delimiter: Delimiter): QuotedCells => {
     if (!quoted.has(delimiter)) quoted.set(delimiter, cellsOfQuoted(content.lines, delimiter))
     return quoted.get(delimiter)!
   }
   const found = dialects
-    .map((dialect) => matrixUnder(content, dialect, () => cells(dialect.delimiter)))
+    .map((dialect) => matrixUnder(content, dialect, hints, () => cells(dialect.delimiter)))
     .filter((matrix) => matrix !== null)
   const most = Math.max(0, ...found.map(({ rows, x }) => rows.length * x.length))
   return found.filter(({ rows, x }) => rows.length * x.length === most)
 }
 
-const matrixUnder = (content: Content, dialect: Dialect, quoted: () => QuotedCells): Matrix | null => {
+const matrixUnder = (
+  content: Content,
+  dialect: Dialect,
+  hints: ReadingHints,
+  quoted: () => QuotedCells,
+): Matrix | null => {
   const { lines } = content
   let rows = 0
   for (let i = 0; i < Math.min(lines.length - 1, HEADER_LINES) && rows < FEWEST; i++) {
     const { text } = lines[i]!
-    if (pieces(text, dialect.delimiter) < FEWEST) continue
+    if (!hasPieces(text, dialect.delimiter)) {
+      if (BEGINS_WITH_NUMBER.test(text)) rows++
+      continue
+    }
     const cells = cellsOf(text, dialect.delimiter) ?? []
     const head = headOf(cells, dialect)
-    const matrix = head === null ? null : matrixBelow(content, i, head, dialect, quoted())
+    const isAxis = head !== null && isPlausible(axisOf(content, i, head), hints)
+    const matrix = isAxis ? matrixBelow(content, i, head, dialect, quoted()) : null
     if (matrix !== null) return matrix
     // after some rows that begin with a number no row of wavelengths will come
     if (numberOf(cells[0] ?? '', dialect.decimal) !== null) rows++
@@ -66,8 +75,24 @@ const matrixUnder = (content: Content, dialect: Dialect, quoted: () => QuotedCel
   return null
 }
 
-const pieces = (text: string, delimiter: Delimiter): number =>
-  delimiter === ' ' ? text.trim().split(/[ \t]+/).length : text.split(delimiter).length
+const BEGINS_WITH_NUMBER = /^\s*["']?[+-]?[.,]?\d/
+
+/** Whether a line falls into so many pieces as a row of wavelengths has at least. */
+const hasPieces = (text: string, delimiter: Delimiter): boolean => {
+  if (delimiter === ' ') return text.trim().split(/[ \t]+/, FEWEST).length >= FEWEST
+  const first = text.indexOf(delimiter)
+  return first >= 0 && text.indexOf(delimiter, first + 1) >= 0
+}
+
+/** What a row of wavelengths says of its axis. */
+type Axis = Pick<Matrix, 'x' | 'headings' | 'unit' | 'above'>
+
+const axisOf = ({ lines }: Content, at: number, head: Head): Axis => ({
+  x: Float64Array.from(head.x, (value) => value ?? Number.NaN),
+  headings: head.headings,
+  unit: head.unit,
+  above: lines.slice(0, at),
+})
 
 interface Head {
   readonly headings: readonly string[]
@@ -196,7 +221,7 @@ const breakIn = (
 }
 
 /** The words for the axis in the headings of a matrix: behind each wavelength, in the corner, or alone on a line above. */
-export const axisWordsOf = ({ headings, unit, above }: Matrix): string => {
+export const axisWordsOf = ({ headings, unit, above }: Pick<Matrix, 'headings' | 'unit' | 'above'>): string => {
   if (unit !== '') return unit
   const speaks = (text: string) => axisWords(text).units.length > 0 || axisWords(text).quantity !== null
   const corner = headings.filter(speaks).join(' ')
@@ -209,7 +234,7 @@ export const axisWordsOf = ({ headings, unit, above }: Matrix): string => {
  * Whether the row of numbers can be an axis: most values in the range of the unit that is said, else all but a few in the range where
  * a unit need not be said.
  */
-export const isPlausible = (matrix: Matrix, hints: ReadingHints): boolean => {
+const isPlausible = (matrix: Axis, hints: ReadingHints): boolean => {
   const { x } = matrix
   const said = hints.x ?? axisWords(axisWordsOf(matrix)).units[0]
   const units = said === undefined || said === 'angstrom' ? (['nm', 'cm^-1'] as const) : [said]
