@@ -34,14 +34,8 @@ const line: Readonly<Record<Form, (y: readonly number[]) => string>> = {
   DIFDUP: (y) => dif(y, true),
 }
 
-/** A JCAMP-DX file of whole ordinates in units of `yFactor`, `perLine` to a line. */
-export const writeJcamp = (
-  x: readonly number[],
-  y: readonly number[],
-  form: Form,
-  perLine: number,
-  yFactor = 1e-5,
-): Uint8Array => {
+/** Lines of an (X++(Y..Y)) table. */
+const tableLines = (x: readonly number[], y: readonly number[], form: Form, perLine: number): readonly string[] => {
   const differs = form === 'DIF' || form === 'DIFDUP'
   const lines: string[] = []
   let check = false
@@ -51,6 +45,18 @@ export const writeJcamp = (
     check = differs && (check || part.length > 1)
   }
   if (check) lines.push(x.at(-1) + coded(SQZ, y.at(-1)!))
+  return lines
+}
+
+/** A JCAMP-DX file of whole ordinates in units of `yFactor`, `perLine` to a line. */
+export const writeJcamp = (
+  x: readonly number[],
+  y: readonly number[],
+  form: Form,
+  perLine: number,
+  yFactor = 1e-5,
+): Uint8Array => {
+  const lines = tableLines(x, y, form, perLine)
   const head = [
     '##TITLE= made up',
     '##JCAMP-DX= 4.24',
@@ -66,6 +72,41 @@ export const writeJcamp = (
     '##XYDATA= (X++(Y..Y))',
   ]
   return new TextEncoder().encode(`${[...head, ...lines, '##END='].join('\n')}\n`)
+}
+
+/** The same spectrum on two pages of NTUPLES, ten seconds apart. */
+export const writeNtuples = (
+  x: readonly number[],
+  y: readonly number[],
+  form: Form,
+  perLine: number,
+  yFactor = 1e-5,
+): Uint8Array => {
+  const page = (seconds: number) => [
+    `##PAGE= T= ${seconds}`,
+    '##DATA TABLE= (X++(Y..Y)), XYDATA',
+    ...tableLines(x, y, form, perLine),
+  ]
+  const lines = [
+    '##TITLE= made up',
+    '##JCAMP-DX= 5.01',
+    '##DATA TYPE= UV/VIS SPECTRUM',
+    '##LONGDATE= 2026/03/02 09:00:00 +0100',
+    '##NTUPLES= UV/VIS SPECTRUM',
+    '##VAR_NAME= WAVELENGTH, ABSORBANCE, TIME',
+    '##SYMBOL= X, Y, T',
+    '##VAR_TYPE= INDEPENDENT, DEPENDENT, PAGE',
+    `##VAR_DIM= ${x.length}, ${x.length}, 2`,
+    '##UNITS= NANOMETERS, ABSORBANCE, SECONDS',
+    `##FACTOR= 1, ${yFactor}, 1`,
+    `##FIRST= ${x[0]}, ${y[0]! * yFactor}, 0`,
+    `##LAST= ${x.at(-1)}, ${y.at(-1)! * yFactor}, 10`,
+    ...page(0),
+    ...page(10),
+    '##END NTUPLES= UV/VIS SPECTRUM',
+    '##END=',
+  ]
+  return new TextEncoder().encode(`${lines.join('\n')}\n`)
 }
 
 export interface WrittenDialect {
@@ -98,5 +139,16 @@ export const writeTable = (x: readonly number[], y: readonly number[], d: Writte
   const name = (text: string) => (d.quoted || text.includes(d.delimiter) ? `"${text}"` : text)
   const rows = x.map((v, i) => `${number(v)}${d.delimiter}${number(y[i]!)}`)
   const lines = [...d.header, d.heading.map(name).join(d.delimiter), ...rows, ...d.footer]
+  return encode(`${lines.join(d.eol)}${d.eol}`, d.encoding)
+}
+
+/** A row of wavelengths over the same spectrum twice, in one dialect. */
+export const writeMatrix = (x: readonly number[], y: readonly number[], d: WrittenDialect): Uint8Array => {
+  const number = (v: number) => String(v).replace('.', d.decimal)
+  const lines = [
+    'Absorbance',
+    ['sample', ...x.map((v) => `${number(v)} nm`)].join(d.delimiter),
+    ...['S-1', 'S-2'].map((name) => [name, ...y.map(number)].join(d.delimiter)),
+  ]
   return encode(`${lines.join(d.eol)}${d.eol}`, d.encoding)
 }
