@@ -54,11 +54,12 @@ const isDigit = (code: number): boolean => code >= 48 && code <= 57
 
 /** Where the digits, at most one point among them, end. */
 const endOfDigits = (text: string, from: number): number => {
+  const n = text.length
   let i = from
-  while (isDigit(text.charCodeAt(i))) i++
-  if (text.charCodeAt(i) === POINT) {
+  while (i < n && isDigit(text.charCodeAt(i))) i++
+  if (i < n && text.charCodeAt(i) === POINT) {
     i++
-    while (isDigit(text.charCodeAt(i))) i++
+    while (i < n && isDigit(text.charCodeAt(i))) i++
   }
   return i
 }
@@ -106,10 +107,12 @@ export const decodeLine = (text: string): DecodedLine => {
   }
   if (!Number.isFinite(x)) return wrong(i, `"${text.trim().slice(0, 12)}" does not begin with an abscissa`)
   let last = Number.NaN
-  let difference: number | null = null
+  let difference = 0
+  let differs = false
   let doubled = false
   let separated = false
-  while (i < text.length) {
+  const n = text.length
+  while (i < n) {
     const code = text.charCodeAt(i)
     if (code === 32 || code === 9 || code === 44) {
       separated = true
@@ -127,27 +130,39 @@ export const decodeLine = (text: string): DecodedLine => {
       if (!Number.isInteger(count) || count > MOST_REPETITIONS || text.slice(at, i).includes('.'))
         return wrong(at, `"${text.slice(at, i)}" is no count of repetitions`)
       for (let k = 1; k < count; k++) {
-        last += difference ?? 0
+        last += difference
         ordinates.push(last)
       }
     } else if (form !== 0) {
-      i = endOfDigits(text, at + 1)
-      const value = ledNumber(text, at, i)
+      let value = DIGIT[code]!
+      let digit = 0
+      for (i = at + 1; i < n; i++) {
+        digit = text.charCodeAt(i) - 48
+        if (digit < 0 || digit > 9) break
+        value = 10 * value + digit
+      }
+      if (digit === POINT - 48 || i - at > SAFE_DIGITS) {
+        i = endOfDigits(text, at + 1)
+        value = ledNumber(text, at, i)
+      } else value *= SIGN[code]!
       if (!Number.isFinite(value)) return wrong(at, `"${text.slice(at, i)}" is no number`)
       if (form === FORMS.DIF) {
         if (ordinates.length === 0) return wrong(at, 'a difference with nothing before it')
         if (Number.isNaN(last)) return wrong(at, 'a difference from a missing ordinate')
         last += value
         difference = value
+        differs = true
       } else {
         last = value
-        difference = null
+        difference = 0
+        differs = false
       }
       ordinates.push(last)
     } else if (code === 63) {
       last = Number.NaN
       ordinates.push(last)
-      difference = null
+      difference = 0
+      differs = false
       i++
     } else {
       AFFN.lastIndex = at
@@ -159,7 +174,8 @@ export const decodeLine = (text: string): DecodedLine => {
       last = Number(m[0])
       ordinates.push(last)
       forms |= separated ? FORMS.AFFN : FORMS.PAC
-      difference = null
+      difference = 0
+      differs = false
       i = AFFN.lastIndex
     }
     forms |= form
@@ -168,7 +184,7 @@ export const decodeLine = (text: string): DecodedLine => {
   }
   return {
     kind: 'line',
-    value: { x, xColumn: xAt + 1, ordinates, column, endsInDifference: difference !== null, forms },
+    value: { x, xColumn: xAt + 1, ordinates, column, endsInDifference: differs, forms },
   }
 }
 

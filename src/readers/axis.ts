@@ -32,7 +32,9 @@ export const axisFault = (
       remedy: 'export the whole spectrum',
     }
   }
-  const wrong = x.findIndex((v) => v < RANGE[unit][0] || v > RANGE[unit][1])
+  const [least, most] = RANGE[unit]
+  let wrong = -1
+  for (let i = 0; i < x.length && wrong < 0; i++) if (x[i]! < least || x[i]! > most) wrong = i
   if (wrong >= 0) {
     const what = `${x[wrong]} cannot be a value in ${unit} (${RANGE[unit][0]} to ${RANGE[unit][1]})`
     return {
