@@ -8,6 +8,8 @@ export interface LineOfTable {
   /** As written: not yet multiplied by XFACTOR. */
   readonly x: number
   readonly xColumn: number
+  /** As text; empty where it is squeezed. */
+  readonly xText: string
   /** As written; NaN for `?`. */
   readonly ordinates: readonly number[]
   /** Column of the first ordinate. */
@@ -96,8 +98,10 @@ export const decodeLine = (text: string): DecodedLine => {
   let m = AFFN.exec(text)
   let i = xAt
   let x = Number.NaN
+  let xText = ''
   if (m) {
-    x = Number(m[0])
+    xText = m[0]
+    x = Number(xText)
     i = AFFN.lastIndex
   } else if (formAt(text, i) === FORMS.SQZ) {
     // the abscissa itself may be squeezed
@@ -184,7 +188,7 @@ export const decodeLine = (text: string): DecodedLine => {
   }
   return {
     kind: 'line',
-    value: { x, xColumn: xAt + 1, ordinates, column, endsInDifference: differs, forms },
+    value: { x, xColumn: xAt + 1, xText, ordinates, column, endsInDifference: differs, forms },
   }
 }
 

@@ -28,6 +28,8 @@ interface Written {
 }
 
 const unitOf = (text: string): number => {
+  const point = text.indexOf('.')
+  if (!/[eE]/.test(text)) return point < 0 ? 1 : 10 ** (point + 1 - text.length)
   const [mantissa, exponent] = text.toLowerCase().split('e') as [string, string?]
   const digits = mantissa.includes('.') ? mantissa.length - mantissa.indexOf('.') - 1 : 0
   return 10 ** (Number(exponent ?? 0) - digits)
@@ -211,16 +213,15 @@ const sequenceIn = (
   for (const { number, text } of table.body) {
     const decoded = decodeLine(text)
     if (decoded.kind === 'wrong') return faulty(number, decoded.column, 'bad-ordinate', decoded.what)
-    const { x, xColumn, ordinates, column, endsInDifference } = decoded.value
+    const { x, xColumn, xText, ordinates, column, endsInDifference } = decoded.value
     forms |= decoded.value.forms
     if (ordinates.length === 0)
       return faulty(number, xColumn, 'no-ordinates', 'a line with an abscissa and no ordinate')
     // the abscissa of a line with a check ordinate is that of the point it repeats
     const at = check ? have - 1 : have
     const expected = first.value + at * step
-    const written = text.trim().match(/^[+-]?\d*\.?\d*/)![0]
     // an abscissa is rounded where it ends
-    const tolerance = Math.max(0.5 * unitOf(written === '' ? '1' : written) * xFactor, 0.05 * Math.abs(step)) * 1.000001
+    const tolerance = Math.max(0.5 * unitOf(xText) * xFactor, 0.05 * Math.abs(step)) * 1.000001
     confirmed = at > 0 ? (tolerance * (count.value - 1)) / at : Number.POSITIVE_INFINITY
     if (Math.abs(x * xFactor - expected) > tolerance) {
       const what = `the line begins at X = ${x * xFactor} where FIRSTX, LASTX and NPOINTS put point ${at + 1} at ${Number(expected.toPrecision(10))}`
