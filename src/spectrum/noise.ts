@@ -1,17 +1,17 @@
 /**
  * Noise, estimated where it stands. Each point is compared with the cubic through its two neighbours on either side
  * (unequal spacing allowed): whatever the curve does up to third order cancels, so the difference r = y − Σ wₖ yₖ is noise
- * alone with variance σ²(1 + Σ wₖ²). In a moving window the root of the mean r², no point counting more than 2.5 σ of the median
- * absolute deviation (0.6745 σ in a normal distribution), is robust and nearly as sharp as the plain root mean square: weights that
+ * alone with variance σ²(1 + Σ wₖ²). In a moving window the root of the mean r², points beyond 3 σ of the median
+ * absolute deviation (0.6745 σ in a normal distribution) left out, is robust and nearly as sharp as the plain root mean square: weights that
  * scatter would widen what is fitted with them. Within a window σ is taken to grow with 10^A, the law of a
  * detector of constant noise in transmittance; between windows it is free, since lamps and detectors are not
  * constant: on real spectra σ differs a hundredfold between the middle and the ends.
  */
 
 const MAD_TO_SIGMA = 1.4826
-/** Where r² is clipped, in σ, and the mean of what is left of a normal distribution's, E min(z², 2.5²). */
-const CLIP = 2.5
-const LEFT_OF_CLIPPED = 0.97756
+/** Beyond this many σ a point is left out; and the mean square of what is left of a normal distribution, E(z² | |z| < 3). */
+const BEYOND = 3
+const LEFT_WITHIN = 0.97334
 const HALF_WINDOW = 30
 
 /** Smallest noise ever reported, absorbance: keeps weights finite on curves that were computed, not measured. */
@@ -106,10 +106,15 @@ export const localNoise = (
 /** Standard deviation of values about zero, given their sizes. */
 const robustDeviation = (sizes: Float64Array): number => {
   const rough = MAD_TO_SIGMA * median(sizes)
-  const most = (CLIP * rough) ** 2
+  const most = BEYOND * rough
   let sum = 0
-  for (let i = 0; i < sizes.length; i++) sum += Math.min(sizes[i]! * sizes[i]!, most)
-  return Math.sqrt(sum / sizes.length / LEFT_OF_CLIPPED)
+  let count = 0
+  for (let i = 0; i < sizes.length; i++) {
+    if (!(sizes[i]! <= most)) continue
+    sum += sizes[i]! * sizes[i]!
+    count++
+  }
+  return count === 0 ? 0 : Math.sqrt(sum / count / LEFT_WITHIN)
 }
 
 /** 10^ΔA, held within a factor of ten: one window never explains more than that by absorbance alone. */
