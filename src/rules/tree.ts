@@ -1,4 +1,4 @@
-import { parse } from 'mathjs/number'
+import math from 'mathjs/lib/browser/math.js'
 import { type Dimension, KELVIN_AT_ZERO_C, PLAIN, product, raised, unitOf } from './dimension.ts'
 import { Refusal } from './parts.ts'
 import { type Objection, scan, type Token } from './tokens.ts'
@@ -71,7 +71,7 @@ export const readTree = (written: string): Reading => {
   const scanned = scan(written)
   if (scanned.kind === 'refused') return scanned
   try {
-    const node = parse(scanned.text) as unknown as Node
+    const node = math.parse(scanned.text) as unknown as Node
     return { kind: 'read', tree: finished(growing(scanned.tokens)(node)) }
   } catch (error) {
     return { kind: 'refused', objections: [error instanceof Refusal ? error.objection : syntax(error, scanned.text)] }
