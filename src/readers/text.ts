@@ -46,6 +46,17 @@ const CONTROL = /[\x00-\x08\x0e-\x1f\x7f]/
  * `binary` where control characters show that it is no text.
  */
 export const decodeText = (bytes: Uint8Array): Decoded => {
+  const known = decoded.get(bytes)
+  if (known !== undefined) return known
+  const fresh = decodedAnew(bytes)
+  decoded.set(bytes, fresh)
+  return fresh
+}
+
+/** Every reader that is asked whether a file is its own decodes it: once is enough. A file's bytes are never written over. */
+const decoded = new WeakMap<Uint8Array, Decoded>()
+
+const decodedAnew = (bytes: Uint8Array): Decoded => {
   const marked =
     bytes[0] === 0xff && bytes[1] === 0xfe ? 'utf-16le' : bytes[0] === 0xfe && bytes[1] === 0xff ? 'utf-16be' : null
   const wide = marked ?? byteOrder(bytes)

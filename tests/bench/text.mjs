@@ -47,7 +47,8 @@ export const run = () => {
     const bytes = Buffer.from(`${lines.join('\n')}\n`)
     const bare = () => parse(bytes, { delimiter })
     const whole = () => {
-      const reading = readSpectra(bytes, 'bench.csv', {})
+      // another object each time: what is kept of a file that was decoded must not count
+      const reading = readSpectra(bytes.subarray(), 'bench.csv', {})
       if (reading.kind !== 'read' || reading.spectra[0].x.length !== POINTS)
         throw new Error(JSON.stringify(reading.faults))
     }
