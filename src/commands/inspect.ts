@@ -16,6 +16,7 @@ interface InspectOptions {
   readonly medium?: string
   readonly delimiter?: string
   readonly decimal?: string
+  readonly layout?: string
 }
 
 const EXAMPLE = `
@@ -48,6 +49,7 @@ export const addInspect = (program: Command): void => {
     )
     .option('--delimiter <delimiter>', 'what stands between columns')
     .option('--decimal <mark>', '. or ,')
+    .option('--layout <layout>', 'columns where a spectrum is a column, rows where it is a row')
     .addHelpText('after', EXAMPLE)
     .action((files: string[], options: InspectOptions) => {
       const hints = hintsOf(options)
@@ -59,6 +61,7 @@ export const addInspect = (program: Command): void => {
 const UNITS: readonly AxisUnit[] = ['nm', 'um', 'cm^-1', 'eV']
 const MEDIA: readonly Medium[] = ['air', 'vacuum']
 const MARKS = ['.', ','] as const
+const LAYOUTS = ['columns', 'rows'] as const
 const KINDS: readonly OrdinateKind[] = [
   'absorbance',
   'transmittance',
@@ -80,7 +83,9 @@ const hintsOf = (options: InspectOptions): ReadingHints => {
   const medium = oneOf('--medium', options.medium, MEDIA)
   const y = oneOf('--y', options.y, KINDS)
   const decimal = oneOf('--decimal', options.decimal, MARKS)
+  const layout = oneOf('--layout', options.layout, LAYOUTS)
   return {
+    ...(layout === undefined ? {} : { layout }),
     ...(x === undefined ? {} : { x }),
     ...(medium === undefined ? {} : { medium }),
     ...(y === undefined ? {} : { y }),

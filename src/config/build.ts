@@ -41,7 +41,7 @@ export const toWeb = (web: RoomFile['web'], folder: string): WebSettings | null 
 const DELIMITERS: Readonly<Record<string, string>> = { tab: '\t', space: ' ' }
 
 export const toInstrument = (file: InstrumentFile, folder: string): Instrument => {
-  const { x, medium, y, delimiter, decimal } = file.reading
+  const { x, medium, y, delimiter, decimal, layout } = file.reading
   return {
     name: file.instrument,
     title: file.title ?? file.instrument,
@@ -52,6 +52,7 @@ export const toInstrument = (file: InstrumentFile, folder: string): Instrument =
       ...(x === undefined ? {} : { x }),
       ...(medium === undefined ? {} : { medium }),
       ...(y === undefined ? {} : { y }),
+      ...(layout === undefined ? {} : { layout }),
       ...(delimiter === undefined ? {} : { delimiter: DELIMITERS[delimiter] ?? delimiter }),
       ...(decimal === undefined ? {} : { decimal }),
     },

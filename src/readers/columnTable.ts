@@ -133,13 +133,13 @@ const commaTwice = (table: Table, around: Surroundings): Complaint | null => {
 const damagedHeading = (around: Surroundings): Complaint | null => {
   const numeric = around.labels.filter((label) => /^[+-]?[\d.,]+(?:[eE][+-]?\d+)?$/.test(label)).length
   const first = around.labels[0]!
-  if (numeric === 0 || (numeric < around.labels.length - 1 && !/\d.*[^\d\s.,eE+-]|[^\d\s.,eE+-].*\d/.test(first)))
+  if (numeric === 0 || (2 * numeric <= around.labels.length && !/\d.*[^\d\s.,eE+-]|[^\d\s.,eE+-].*\d/.test(first)))
     return null
   if (/[a-zA-Zλ]{2}/.test(first) && !/^(?:t|time|zeit|temps|tiempo)\b/i.test(first)) return null
   return {
     code: 'damaged-row',
     what: `the line above the table ("${around.labels.slice(0, 3).join('", "')}") is neither heading nor row`,
-    remedy: 'mend it; a table with wavelengths along a row is not read',
+    remedy: 'mend it, or export the file again',
   }
 }
 

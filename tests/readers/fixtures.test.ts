@@ -193,6 +193,7 @@ const BROKEN: Readonly<Record<string, readonly [code: string, line?: number]>> =
   'jcamp-ntuples-list-long.jdx': ['list-length', 15],
   'matrix.csv': ['ordinate-unknown', 1],
   'matrix-short-row.csv': ['row-length', 4],
+  'matrix-damaged-heading.csv': ['not-a-number', 2],
   'matrix-letter.csv': ['not-a-number', 4],
   'matrix-axis-turns-back.csv': ['axis-order', 2],
   'matrix-axis-letter.csv': ['not-a-number', 2],

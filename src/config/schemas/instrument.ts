@@ -15,6 +15,7 @@ const reading = z.strictObject({
     .optional()
     .describe('What the second column is'),
   delimiter: word([';', ',', 'tab', 'space', '|']).optional().describe('Between columns'),
+  layout: word(['columns', 'rows']).optional().describe('Whether a spectrum is a column or a row of a table'),
   decimal: word(['.', ',']).optional().describe('Decimal mark'),
 })
 
