@@ -9,7 +9,7 @@
  *   BIC = n′ ln(χ²/n) + p ln n′,  n′ = n/τ
  * with τ the correlation time of the residuals of the best candidate. Real bands are no Gaussians: against raw noise one
  * more band always pays, because residuals of structure look like n independent witnesses. They are not, n′ counts them.
- * On noise alone τ = 1 and the score is the usual one. Points are joined to some 240, which loses nothing of a broad band.
+ * On noise alone τ = 1 and the score is the usual one, but for terms of the background, which have Akaike's price (judge.ts). Points are joined to some 240, which loses nothing of a broad band.
  */
 import type { Spectrum } from '../spectrum/types.ts'
 import { BACKGROUNDS, flankAtEdge, flankStart, RICH_BACKGROUND } from './candidates.ts'
@@ -95,6 +95,8 @@ export const chooseRecipe: ChooseRecipe = (spectra, options) => {
   const hints = options.hints ?? []
   const narrow = hints.filter((hint) => hint.narrow)
   const broad = full.map((points) => besideNarrow(points, narrow))
+  if (broad.some(({ x, spread }) => x.length < 20 || !(spread > 0)))
+    return none(spectra, 'Beside the narrow features that the species names too few points are left for a broad band.')
   const flagged = 2 * spectra.filter(({ flags }) => flags.includes('lamp-step')).length > spectra.length
   const search = (points: readonly Selection[], extra: readonly BackgroundTerm[]) =>
     choose(

@@ -147,6 +147,12 @@ describe('a narrow feature on a broad band', () => {
     expect(recipe.name).toBe('2 gaussian + constant')
   })
 
+  it('that takes the whole window leaves no broad band, and that is said', () => {
+    const hints = [{ positionPerCm: 20000, withinPerCm: 20000, narrow: true }]
+    const choice = chooseRecipe([simulate(broad, 5e-4, normal)], { hints })
+    expect(choice).toMatchObject({ kind: 'none', why: expect.stringMatching(/too few points are left/) })
+  })
+
   it('is never made of noise', () => {
     for (let i = 0; i < 40; i++) expect(chosen(broad, 1e-3, TWO).recipe.name).not.toContain('narrow')
   })
